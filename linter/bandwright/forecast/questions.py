@@ -1,0 +1,55 @@
+"""The questions that only exact work answers. A question is its own key: equal questions, equal answers."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+from bandwright.theory.closed_form.types import Mask
+
+
+@dataclass(frozen=True, slots=True)
+class FirLength:
+    """What is the least length of an equiripple linear-phase filter that meets this mask?
+
+    Answered by `FirLengthAnswer`.
+    """
+
+    mask: Mask
+    bounded_transitions: bool = True
+
+
+@dataclass(frozen=True, slots=True)
+class FirLengthAnswer:
+    """`taps` meets the mask while one and two taps fewer cannot; None where the limits ended the search."""
+
+    taps: int | None
+    low: int
+    """No shorter filter of this or the other parity meets the mask."""
+    probes: int
+    """Designs that were tried."""
+
+
+@dataclass(frozen=True, slots=True)
+class CoefficientBits:
+    """How many bits do the coefficients of this IIR candidate's reference design need?
+
+    Answered by `CoefficientBitsAnswer`. `family` and `order` name the reference design of the mask.
+    """
+
+    mask: Mask
+    family: str
+    order: int
+    structure: str
+    number_format: Literal["floating", "fixed"]
+
+
+@dataclass(frozen=True, slots=True)
+class CoefficientBitsAnswer:
+    """The least word at which nine of ten seeded roundings, and plain rounding, keep the mask; None beyond the limit."""
+
+    bits: int | None
+
+
+Question = FirLength | CoefficientBits
+Answer = FirLengthAnswer | CoefficientBitsAnswer

@@ -1,0 +1,32 @@
+"""Every bound on work, as counts (bytes, nodes, orders, trials), never as seconds.
+
+A loaded machine therefore finds exactly what an idle one finds.
+"""
+
+MAX_FILE_BYTES = 5 * 1024 * 1024
+"""A larger band file is refused with a finding."""
+
+MAX_YAML_DEPTH = 64
+"""Deeper nesting of flow brackets is refused before it reaches the parser."""
+
+MAX_YAML_NODES = 400_000
+"""Nodes that one document may expand to, aliases counted each time they are used."""
+
+MAX_PARSE_REPAIRS = 4
+"""How often a block that does not parse is mended and tried again."""
+
+MAX_IIR_ORDER = 512
+"""Orders beyond this are reported as "more than"; no filter of the trade comes near."""
+
+MAX_FIR_TAPS = 20_000
+"""Lengths beyond this are reported as an estimate only."""
+
+MAX_EXACT_TAPS = 2_000
+"""The longest FIR filter that the exchange is asked to design."""
+
+MAX_SEARCHED_WORD_BITS = 160
+"""The longest coefficient word that the exact search tries."""
+"""A word this long carries every filter that MAX_IIR_ORDER allows in a cascade."""
+
+MAX_ANSWERS_KEPT = 4_096
+"""Answers kept for reuse; one that is in use is never dropped."""
