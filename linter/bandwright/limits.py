@@ -24,9 +24,17 @@ MAX_FIR_TAPS = 20_000
 MAX_EXACT_TAPS = 2_000
 """The longest FIR filter that the exchange is asked to design."""
 
+MAX_EXCHANGE_STEPS = 200
+"""Steps of one exchange; most designs take fewer than ten."""
+
+MAX_LEVEL_TRIALS = 20
+"""Placings of floating pass-band windows that are tried for one length."""
+
 MAX_SEARCHED_WORD_BITS = 160
 """The longest coefficient word that the exact search tries."""
-"""A word this long carries every filter that MAX_IIR_ORDER allows in a cascade."""
+
+MAX_ANALYSES_KEPT = 16_384
+"""Analyses kept by the value of their filter; more than the filters of the largest band file."""
 
 MAX_ANSWERS_KEPT = 4_096
 """Answers kept for reuse; one that is in use is never dropped."""

@@ -61,9 +61,12 @@ class Filter:
     name: str
     settings: tuple[tuple[Path, Setting], ...]
     _index: Mapping[Path, Setting] = field(init=False, compare=False, repr=False, hash=False)
+    _unknown: tuple[Path, ...] = field(init=False, compare=False, repr=False, hash=False)
 
     def __post_init__(self) -> None:
         object.__setattr__(self, "_index", dict(self.settings))
+        unknown = tuple(path for path, setting in self.settings if setting.value is UNKNOWN)
+        object.__setattr__(self, "_unknown", unknown)
 
     def get(self, *path: str | int) -> Setting | None:
         """The setting at this path, or None where nothing is said."""
@@ -71,12 +74,9 @@ class Filter:
 
     def is_unknown(self, *path: str | int) -> bool:
         """Whether the value at `path`, a container of it, or anything inside it is written but unreadable."""
-        for known_path, setting in self.settings:
-            if setting.value is UNKNOWN and (
-                known_path[: len(path)] == path or path[: len(known_path)] == known_path
-            ):
-                return True
-        return False
+        return any(
+            unknown[: len(path)] == path or path[: len(unknown)] == unknown for unknown in self._unknown
+        )
 
     def quantity(self, *path: str | int) -> Quantity | None:
         """The quantity at this path, or None where it is absent or unknown."""
@@ -123,7 +123,7 @@ class Place:
     path: Path
     part: Literal["key", "value", "all"] = "value"
     block: str = ""
-    """"" for the block of the filter itself, else `devices/NAME`, `filters/NAME`, or `/` for the top level."""
+    """"" for the block of the filter itself, else `devices/NAME`, `filters/NAME`, or `/` (top level)."""
     span: Span | None = None
     """From the first line of the block, for text that has no path (a tab, a stray line)."""
 
@@ -140,6 +140,8 @@ class Fault:
     facts: tuple[tuple[str, str], ...] = ()
     form: str = ""
     mends: tuple[Mend, ...] = ()
+    related: tuple[Place, ...] = ()
+    """Other places that the fault has to do with, such as the first of two equal keys."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -152,6 +154,8 @@ class Mend:
     part: Literal["key", "value"] = "value"
     reading: str = ""
     """What the corrected text means, for the title: "a frequency, 0.01 pi at 4 kHz"."""
+    span: Span | None = None
+    """Replace this stretch of the block by `text` instead, for text that has no path."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -163,6 +167,8 @@ class Marks:
     all: Span
     flow: bool = False
     """Inside brackets, so that neighbours are parted by commas."""
+    shared: bool = False
+    """Stands behind an alias: the marks are the alias's, and an edit here would change other places."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -190,6 +196,17 @@ class Document:
     filters: tuple[tuple[int, Filter], ...]
     """(index into `blocks`, filter), in the order of the file."""
     format: str | None = None
+    parsed: Mapping[tuple[str, str], Block] = field(default_factory=dict, compare=False, repr=False)
+    """Blocks by kind and text, to be reused by the next reading."""
+    resolved: Mapping[tuple[str, str], Resolved] = field(default_factory=dict, compare=False, repr=False)
+    """Filters by their own text and their device's, to be reused by the next reading."""
+
+
+class Resolved(NamedTuple):
+    """A filter with its device's keys and the defaults laid under it, and what is wrong with that."""
+
+    filter: Filter
+    faults: tuple[Fault, ...]
 
 
 @dataclass(frozen=True, slots=True)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Literal
 
@@ -53,3 +54,5 @@ class CoefficientBitsAnswer:
 
 Question = FirLength | CoefficientBits
 Answer = FirLengthAnswer | CoefficientBitsAnswer
+Answers = Mapping[Question, Answer]
+"""The answers that there are so far. An answer never changes, so more of them only settle more."""

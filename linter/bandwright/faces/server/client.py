@@ -1,0 +1,46 @@
+"""What the client can take, as it said when it connected."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from lsprotocol import types
+from pygls.capabilities import get_capability
+
+
+@dataclass(frozen=True, slots=True)
+class Client:
+    """The client's abilities that make a difference to what is sent."""
+
+    markdown: bool = False
+    """In hovers; otherwise plain text."""
+    related_places: bool = False
+    tags: frozenset[int] = frozenset()
+    versioned_edits: bool = False
+    annotated_edits: bool = False
+    """Edits may ask for a confirmation."""
+    resolves_edits: bool = False
+    """The edit of a code action may come when the user has chosen it."""
+    literal_actions: bool = False
+    """Code actions may carry edits; without this only commands could be offered."""
+
+
+def client_of(capabilities: types.ClientCapabilities) -> Client:
+    """The abilities that a client announces."""
+
+    def says(name: str) -> bool:
+        return bool(get_capability(capabilities, name, False))
+
+    formats = get_capability(capabilities, "text_document.hover.content_format", None) or []
+    tags = get_capability(capabilities, "text_document.publish_diagnostics.tag_support.value_set", None) or []
+    lazy = get_capability(capabilities, "text_document.code_action.resolve_support.properties", None) or []
+    versioned = says("workspace.workspace_edit.document_changes")
+    return Client(
+        markdown=bool(formats) and formats[0] == types.MarkupKind.Markdown,
+        related_places=says("text_document.publish_diagnostics.related_information"),
+        tags=frozenset(int(tag) for tag in tags),
+        versioned_edits=versioned,
+        annotated_edits=versioned and says("workspace.workspace_edit.change_annotation_support"),
+        resolves_edits="edit" in lazy and says("text_document.code_action.data_support"),
+        literal_actions=says("text_document.code_action.code_action_literal_support"),
+    )

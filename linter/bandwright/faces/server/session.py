@@ -1,0 +1,245 @@
+"""All state of the server: the open files, what was found in them, and the answers so far.
+
+Everything happens in the one event loop. Each open file has one task, which starts afresh with every
+edit: it reads the text, analyses in slices what has changed, publishes, and once the user has paused
+answers the open questions one by one. An edit cancels it, so nothing is published for an old version.
+"""
+
+from __future__ import annotations
+
+import asyncio
+import time
+from collections.abc import Callable, Iterable, Iterator
+from dataclasses import dataclass, field, replace
+
+from bandwright.analysis.analyse import Memo, analyse_filter
+from bandwright.analysis.present import present
+from bandwright.analysis.types import Analysis, Finding
+from bandwright.bandfile.reader import read
+from bandwright.bandfile.values import Document, Filter
+from bandwright.faces.server.answers import Answers, Lookups
+from bandwright.faces.server.positions import BYTE_ORDER_MARK, Encoding, LineIndex
+from bandwright.forecast.questions import Answer, Question
+
+SLICE_S = 0.005
+"""How long the loop is kept before it looks at messages again. What is found does not depend on it."""
+
+QUIET_S = 0.15
+"""How long nobody has typed before questions are answered."""
+
+
+@dataclass(eq=False)
+class OpenFile:
+    """One file as the client has it open."""
+
+    uri: str
+    version: int | None
+    text: str
+    document: Document | None = None
+    """The text as read; None until somebody needs it."""
+    before: Document | None = None
+    """The document of an earlier version, whose unchanged blocks are used again."""
+    lines: LineIndex | None = None
+    analyses: dict[int, Analysis] = field(default_factory=dict)
+    """By index of the block, for the document and, until they are carried over, for the one before."""
+    findings: tuple[Finding, ...] | None = None
+    """All that is settled for this version; None until everything was analysed once."""
+    last_good: dict[str, Analysis] = field(default_factory=dict)
+    """By filter: its last analysis while it could be read as written. Only for display."""
+    wanted: list[Question] = field(default_factory=list)
+    """What a hover would like to know, besides what findings wait for."""
+    task: asyncio.Task[None] | None = None
+    analysed: asyncio.Event = field(default_factory=asyncio.Event)
+    """Set while `findings` is there."""
+    is_published: bool = False
+    """Whether this version was published."""
+
+
+class Session:
+    """The open files and everything that they share."""
+
+    def __init__(
+        self,
+        publish: Callable[[OpenFile, tuple[Finding, ...]], None],
+        failed: Callable[[str, Exception], None],
+        today: Callable[[], str],
+    ) -> None:
+        """`publish` is called with all findings of a file when they change; `failed` is told of defects."""
+        self.encoding: Encoding = "utf-16"
+        self.files: dict[str, OpenFile] = {}
+        self.answers = Answers()
+        self.memo = Memo()
+        self._publish = publish
+        self._failed = failed
+        self.today = today
+        self._last_edit_s = 0.0
+
+    def open(self, uri: str, version: int | None, text: str) -> None:
+        """Take up a file, in the place of an open one with the same name."""
+        self._forget(uri)
+        self.files[uri] = file = OpenFile(uri, version, text)
+        self._last_edit_s = time.monotonic()
+        self._start(file)
+
+    def change(self, uri: str, version: int | None, text: str) -> None:
+        """Take the new text of an open file."""
+        file = self.files.get(uri)
+        if file is None:
+            return
+        if file.document is not None:
+            file.before = file.document
+        file.version, file.text = version, text
+        file.document = file.lines = file.findings = None
+        file.is_published = False
+        file.wanted.clear()
+        file.analysed.clear()
+        self._last_edit_s = time.monotonic()
+        self._start(file)
+
+    def close(self, uri: str) -> None:
+        """Let go of a file and clear its findings."""
+        file = self._forget(uri)
+        if file is not None:
+            file.version, file.findings = None, ()
+            self._publish(file, ())
+
+    def _forget(self, uri: str) -> OpenFile | None:
+        file = self.files.pop(uri, None)
+        if file is not None:
+            self._stop(file)
+            file.analysed.set()
+        return file
+
+    def _start(self, file: OpenFile) -> None:
+        self._stop(file)
+        file.task = asyncio.get_running_loop().create_task(self._refresh(file))
+
+    def _stop(self, file: OpenFile) -> None:
+        if file.task is not None:
+            file.task.cancel()
+
+    def read(self, file: OpenFile) -> Document:
+        """The file's document, read from its present text."""
+        if file.document is None:
+            file.document = read(file.text.removeprefix(BYTE_ORDER_MARK), file.before)
+            self._carry_over(file, file.document)
+        return file.document
+
+    def lines(self, file: OpenFile) -> LineIndex:
+        """The lines of the file's present text."""
+        if file.lines is None:
+            file.lines = LineIndex(file.text, self.encoding)
+        return file.lines
+
+    def analysis(self, file: OpenFile, block: int, filter: Filter) -> Analysis:
+        """The analysis of one filter of the file's document, with the answers that there are now."""
+        known = file.analyses.get(block)
+        if known is None or any(question in self.answers.kept for question, _ in known.open):
+            known = file.analyses[block] = analyse_filter(filter, Lookups(self.answers.kept), self.memo)
+        return known
+
+    async def findings(self, file: OpenFile) -> tuple[Finding, ...]:
+        """The findings of the file's newest version, as soon as they are there; none once it is closed."""
+        while file.findings is None:
+            await file.analysed.wait()
+        return file.findings
+
+    def want(self, file: OpenFile, questions: Iterable[Question]) -> None:
+        """Have questions answered that no finding waits for, once the others are."""
+        new = [question for question in questions if question not in self.answers.kept]
+        if new and file.findings is not None:
+            file.wanted = new
+            self._start(file)
+
+    def answer(self, question: Question) -> Answer:
+        """The exact answer to a question, kept for all. It holds the loop while it is computed."""
+        if question not in self.answers.kept:
+            from bandwright.exact.answer import answer  # numpy is loaded when something is asked
+
+            self.answers.add(question, answer(question), self._in_use)
+        return self.answers.kept[question]
+
+    def _in_use(self) -> set[Question]:
+        return {
+            question
+            for file in self.files.values()
+            for one in file.analyses.values()
+            if isinstance(one.forecast.answers, Lookups)
+            for question in one.forecast.answers.used
+        }
+
+    def _carry_over(self, file: OpenFile, document: Document) -> None:
+        """Keep the analyses of filters that are the same as before, wherever their blocks are now."""
+        old = file.before.filters if file.before is not None else ()
+        known = {id(filter): file.analyses[block] for block, filter in old if block in file.analyses}
+        file.analyses = {
+            block: known[id(filter)] for block, filter in document.filters if id(filter) in known
+        }
+
+    async def _refresh(self, file: OpenFile) -> None:
+        """Everything that follows an edit of the file."""
+        try:
+            document = self.read(file)
+            await self._analyse(file, document)
+            while await self._answer_next(file):
+                await self._analyse(file, document)
+        except Exception as error:
+            self._failed(f"analysis of {file.uri}", error)
+            file.findings = ()
+            file.analysed.set()
+            self._show(file, ())
+
+    async def _analyse(self, file: OpenFile, document: Document) -> None:
+        """Analyse what is not analysed yet, and publish if that changed anything.
+
+        Filters that were edited come first. Where that takes more than a slice, what is known after the
+        first one is published before the rest.
+        """
+        ordered = sorted(document.filters, key=lambda each: each[0] in file.analyses)
+        started = time.monotonic()
+        for done, (block, filter) in enumerate(ordered, 1):
+            self.analysis(file, block, filter)
+            if time.monotonic() - started > SLICE_S and done < len(ordered):
+                if file.findings is None and not file.is_published:
+                    self._show(file, self._present(file, document))
+                await asyncio.sleep(0)
+                started = time.monotonic()
+        findings = self._present(file, document)
+        file.last_good = {
+            filter.name: file.analyses[block] if document.blocks[block].whole else file.last_good[filter.name]
+            for block, filter in document.filters
+            if document.blocks[block].whole or filter.name in file.last_good
+        }
+        if findings != file.findings:
+            file.findings = findings
+            self._show(file, findings)
+        file.analysed.set()
+
+    def _present(self, file: OpenFile, document: Document) -> tuple[Finding, ...]:
+        """The findings of the filters that are analysed by now."""
+        done = tuple(each for each in document.filters if each[0] in file.analyses)
+        analyses = [file.analyses[block] for block, _ in done]
+        return present(replace(document, filters=done), analyses, self.today())
+
+    def _show(self, file: OpenFile, findings: tuple[Finding, ...]) -> None:
+        file.is_published = True
+        self._publish(file, findings)
+
+    async def _answer_next(self, file: OpenFile) -> bool:
+        """Wait for a pause, then answer one open question of the file; False where there is none."""
+        question = next(self._open_questions(file), None)
+        if question is None:
+            return False
+        while (rest_s := self._last_edit_s + QUIET_S - time.monotonic()) > 0.0:
+            await asyncio.sleep(rest_s)
+        await asyncio.sleep(0)
+        self.answer(question)
+        return True
+
+    def _open_questions(self, file: OpenFile) -> Iterator[Question]:
+        """What findings wait for, in the order of the file, then what hovers would like to know."""
+        for analysis in file.analyses.values():
+            for question, _ in analysis.open:
+                if question not in self.answers.kept:
+                    yield question
+        yield from (question for question in file.wanted if question not in self.answers.kept)

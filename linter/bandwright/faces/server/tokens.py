@@ -1,0 +1,52 @@
+"""What stands at a place of a document: a key or a value of the grammar."""
+
+from __future__ import annotations
+
+from bisect import bisect_right
+from dataclasses import dataclass
+from typing import Literal
+
+from bandwright.bandfile.values import Block, Document, Filter, Path, Span
+
+
+@dataclass(frozen=True, slots=True)
+class Token:
+    """The smallest entry at a place: its path in its block, and which part of it is there."""
+
+    block: Block
+    index: int
+    """Of the block in the document."""
+    filter: Filter | None
+    """The filter of a filter's block."""
+    path: Path
+    part: Literal["key", "value"]
+    span: Span
+    """In the document."""
+
+
+def token_at(document: Document, line: int, column: int) -> Token | None:
+    """The token that contains the place, or ends there; None between tokens."""
+    # The first block is the top level, around all others.
+    index = bisect_right(document.blocks, line, lo=1, key=lambda block: block.first_line) - 1
+    if index > 0 and (token := _in_block(document, index, line, column)) is not None:
+        return token
+    return _in_block(document, 0, line, column)
+
+
+def _in_block(document: Document, index: int, line: int, column: int) -> Token | None:
+    block = document.blocks[index]
+    here = (line - block.first_line, column)
+    best: tuple[Path, Literal["key", "value"], Span] | None = None
+    for path, marks in block.marks.items():
+        parts: tuple[tuple[Literal["key", "value"], Span], ...] = (("key", marks.key), ("value", marks.value))
+        for part, span in parts:
+            is_here = span[:2] <= here <= span[2:] and span[:2] != span[2:]
+            if is_here and (best is None or (span[:2] >= best[2][:2] and span[2:] <= best[2][2:])):
+                best = path, part, span
+    if best is None:
+        return None
+    path, part, span = best
+    shifted = Span(
+        span.line + block.first_line, span.column, span.end_line + block.first_line, span.end_column
+    )
+    return Token(block, index, dict(document.filters).get(index), path, part, shifted)

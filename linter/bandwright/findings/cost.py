@@ -1,0 +1,129 @@
+"""Findings about what a filter costs: delay, multiplications, memory; and the wish that costs all."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from bandwright.bandfile.grammar import IIR_FAMILIES
+from bandwright.bandfile.values import Place
+from bandwright.findings import gaps, maxima
+from bandwright.findings.case import CHOICE, Case
+from bandwright.findings.rules import Hit, finding
+from bandwright.findings.words import opening, title
+from bandwright.remedies import families, relaxations
+
+
+@finding(
+    "cost/linear-phase-with-iir-family",
+    "error",
+    "{family} is an IIR family, and no IIR filter has exactly linear phase; take an FIR family, or leave out"
+    " `phase: linear`.",
+    remedies=(families.linear_phase_fir, families.any_phase),
+    needs=("phase", "family"),
+)
+def linear_phase_with_iir_family(case: Case) -> Iterator[Hit]:
+    """Linear phase is asked for, and only IIR families are allowed."""
+    filter = case.filter
+    names = filter.names("family")
+    if filter.text("phase") != "linear" or not names or any(name not in IIR_FAMILIES for name in names):
+        return
+    family = filter.get("family")
+    own = family is not None and family.origin == "own"
+    here, there = (("family",), ("phase",)) if own else (("phase",), ("family",))
+    words = "asks for linear phase" if own else "allows IIR families only"
+    facts = (("family", " or ".join(opening(name) for name in names)),)
+    yield Hit("cost/linear-phase-with-iir-family", Place(here), facts, "", ((Place(there), words),))
+
+
+@finding(
+    "cost/delay-over-maximum",
+    "error",
+    {
+        "": "The shortest delay is {delay} ({family}), maximum {maximum}, because the transition is only"
+        " {low} to {high}; widen it, or allow more.",
+        "one": "{family} delays the pass band by {delay}, maximum {maximum}, because the transition is only"
+        " {low} to {high}; widen it, or allow more.",
+        "other": "{family} delays the pass band by {delay}, maximum {maximum}, because the transition is"
+        " only {low} to {high}; {other} delays it by {less}.",
+    },
+    remedies=(families.shortest_delay_family, relaxations.raise_delay),
+    needs=CHOICE,
+)
+def delay_over_maximum(case: Case) -> Iterator[Hit]:
+    """Every allowed family delays the pass bands for longer than the maximum."""
+    yield from _over(case, "delay")
+
+
+@finding(
+    "cost/multiplications-over-maximum",
+    "error",
+    {
+        "": "The fewest multiplications are {multiplications} per sample ({family}), maximum {maximum},"
+        " because the transition is only {low} to {high}; widen it, or allow more.",
+        "one": "{family} takes {multiplications} multiplications per sample, maximum {maximum}, because the"
+        " transition is only {low} to {high}; widen it, or allow more.",
+        "other": "{family} takes {multiplications} multiplications per sample, maximum {maximum}; {other}"
+        " takes {less}.",
+    },
+    remedies=(families.fewest_multiplications_family, relaxations.raise_multiplications),
+    needs=CHOICE,
+)
+def multiplications_over_maximum(case: Case) -> Iterator[Hit]:
+    """Every allowed family takes more multiplications than the maximum."""
+    yield from _over(case, "multiplications")
+
+
+@finding(
+    "cost/memory-over-maximum",
+    "error",
+    {
+        "": "The least memory is {memory} ({family}), maximum {maximum}, because the transition is only"
+        " {low} to {high}; widen it, or allow more.",
+        "one": "{family} takes {memory} of memory, maximum {maximum}, because the transition is only {low}"
+        " to {high}; widen it, or allow more.",
+        "other": "{family} takes {memory} of memory, maximum {maximum}; {other} takes {less}.",
+    },
+    remedies=(families.least_memory_family, relaxations.raise_memory),
+    needs=CHOICE,
+)
+def memory_over_maximum(case: Case) -> Iterator[Hit]:
+    """Every allowed family takes more memory than the maximum."""
+    yield from _over(case, "memory")
+
+
+def _over(case: Case, name: str) -> Iterator[Hit]:
+    filter, forecast = case.filter, case.forecast
+    over = maxima.excess(case, name)
+    if over is None:
+        return
+    exact = case.exact(over.figure)
+    value = exact if exact is not None else over.figure.low
+    gap = gaps.bound_by(filter, over.candidate.binding)
+    if gap is None:
+        return
+    form, words = (
+        "",
+        ((name, forecast.in_words(name, value)), ("maximum", forecast.in_words(name, over.limit))),
+    )
+    if len(maxima.built(case)) == 1:
+        form = "one"
+    maximum = filter.get("at_most", name)
+    own = maximum is not None and maximum.origin == "own"
+    limit = Place(("at_most", name))
+    seconds = forecast.in_seconds(over.figure)
+    if name == "delay":
+        figure = (seconds.low, "s") if seconds is not None else (value, "samples")
+    else:
+        figure = (value, "bytes" if name == "memory" else "")
+    yield Hit(
+        f"cost/{name}-over-maximum",
+        limit if own else Place(gap.stop),
+        (
+            ("family", opening(over.candidate.family) if form else title(over.candidate.family)),
+            *words,
+            *gap.facts,
+        ),
+        form,
+        gap.places if own else (*gap.places, (limit, "the maximum")),
+        figure,
+    )

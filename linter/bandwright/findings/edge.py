@@ -1,0 +1,320 @@
+"""Findings about frequencies: edges, their order, and the transitions between bands."""
+
+from __future__ import annotations
+
+import itertools
+import math
+from collections.abc import Iterator
+
+from bandwright.bandfile import quantities
+from bandwright.bandfile.values import Filter, Path, Place
+from bandwright.findings.case import Case
+from bandwright.findings.rules import Hit, finding
+from bandwright.forecast import bands
+from bandwright.forecast.bands import Band
+from bandwright.remedies import edges
+
+NYQUIST = math.pi * (1.0 + 1e-12)
+"""Half the sample rate in rad/sample, with room for the rounding of a frequency in Hz."""
+
+
+@finding(
+    "edge/sample-rate-not-positive",
+    "error",
+    "A sample rate of {rate} has no frequencies below its Nyquist frequency; write the rate of the filter's"
+    " input.",
+    needs=("sample_rate",),
+)
+def sample_rate_not_positive(case: Case) -> Iterator[Hit]:
+    """A sample rate of zero or less."""
+    rate = case.filter.get("sample_rate")
+    if rate is not None and case.forecast.sample_rate_hz is None:
+        yield Hit("edge/sample-rate-not-positive", Place(("sample_rate",)), (("rate", rate.written),))
+
+
+@finding(
+    "edge/below-zero",
+    "error",
+    "The {kind} edge {edge} is below 0 Hz, and the bands of a filter lie between 0 Hz and Nyquist; write it"
+    " without the sign, or remove it.",
+)
+def below_zero(case: Case) -> Iterator[Hit]:
+    """A negative edge."""
+    for path, _ in _edges(case.filter):
+        quantity = case.filter.quantity(*path)
+        if quantity is not None and quantity.number < 0:
+            yield Hit("edge/below-zero", Place(path), _named(case.filter, path))
+
+
+@finding(
+    "edge/absurd-millihertz",
+    "warning",
+    {
+        "": "{edge} is in millihertz, a {share} part of the sample rate {rate}; if megahertz are meant, write"
+        " `{meant}`.",
+        "rate": "The sample rate {rate} is in millihertz, and the edge {edge} lies far above it; if"
+        " megahertz are meant, write `{meant}`.",
+    },
+    remedies=(edges.megahertz,),
+    needs=("sample_rate",),
+)
+def absurd_millihertz(case: Case) -> Iterator[Hit]:
+    """A frequency in mHz that only makes sense in MHz: with an edge in MHz it would lie below Nyquist."""
+    filter, rate_hz = case.filter, case.forecast.sample_rate_hz
+    rate = filter.get("sample_rate")
+    if rate_hz is None or rate is None:
+        return
+    if (path := _millihertz_rate(filter)) is not None:
+        edge = filter.get(*path)
+        facts = (
+            ("rate", rate.written),
+            ("edge", edge.written if edge else ""),
+            ("meant", _in_megahertz(filter, ("sample_rate",))),
+        )
+        yield Hit(
+            "edge/absurd-millihertz", Place(("sample_rate",)), facts, "rate", ((Place(path), "this edge"),)
+        )
+    for path, _ in _edges(filter):
+        quantity = filter.quantity(*path)
+        if quantity is not None and quantity.unit == "mHz" and 0 < quantity.number * 1e6 <= rate_hz / 2:
+            yield Hit(
+                "edge/absurd-millihertz",
+                Place(path),
+                (
+                    ("edge", quantities.show_quantity(quantity)),
+                    ("share", quantities.show_number(quantity.number * 1e-3 / rate_hz, 2)),
+                    ("rate", rate.written),
+                    ("meant", _in_megahertz(filter, path)),
+                ),
+                "",
+                ((Place(("sample_rate",)), "the sample rate"),),
+            )
+
+
+def _millihertz_rate(filter: Filter) -> Path | None:
+    """The first edge that lies above a sample rate in mHz, and below Nyquist if that is meant in MHz."""
+    rate = filter.quantity("sample_rate")
+    if rate is None or rate.unit != "mHz":
+        return None
+    for path, _ in _edges(filter):
+        edge = filter.quantity(*path)
+        hertz = quantities.hertz(edge) if edge is not None else None
+        if hertz is not None and rate.number * 0.5e-3 < hertz <= rate.number * 0.5e6:
+            return path
+    return None
+
+
+def _in_megahertz(filter: Filter, path: Path) -> str:
+    quantity = filter.quantity(*path)
+    return f"{quantities.show_number(quantity.number, 7)} MHz" if quantity is not None else ""
+
+
+@finding(
+    "edge/beyond-nyquist",
+    "error",
+    {
+        "": "The {kind} edge {edge} is above Nyquist, {nyquist}, where a filter can't tell frequencies"
+        " apart; lower it, or raise the sample rate.",
+        "device": "The {kind} edge {edge} is above Nyquist, {nyquist}, because the rate comes from `{device}`"
+        " ({rate}); give this filter its own rate.",
+        "angular": "The {kind} edge {edge} is above Nyquist, {nyquist}; divided by 2 pi it is {meant}, so"
+        " it may be an angular frequency.",
+        "convention": "The {kind} edge {edge} is above Nyquist, {nyquist}; the same number in another"
+        " convention is `{meant}`, which is below.",
+        "all": "All edges of this filter, from {edge} upwards, are above Nyquist, {nyquist}; check the"
+        " sample rate {rate}.",
+    },
+    remedies=(edges.plausible_edge,),
+    needs=("sample_rate",),
+)
+def beyond_nyquist(case: Case) -> Iterator[Hit]:
+    """An edge above half the sample rate; one for each band, and only one where all edges are."""
+    filter = case.filter
+    found = [(path, w) for path, w in _edges(filter) if w is not None]
+    beyond = [path for path, w in found if w > NYQUIST]
+    rate, rate_hz = filter.get("sample_rate"), case.forecast.sample_rate_hz
+    nyquist = quantities.show(rate_hz / 2, "frequency") if rate_hz is not None else "1 pi"
+    facts = (
+        ("nyquist", nyquist),
+        ("rate", rate.written if rate else ""),
+        ("device", filter.text("device") or ""),
+    )
+    if _millihertz_rate(filter) is not None:
+        return
+    if len(beyond) > 1 and len(beyond) == len(found) and rate is not None:
+        lowest = min(found, key=lambda one: one[1])[0]
+        related = tuple((Place(path), "above Nyquist") for path in beyond)
+        yield Hit(
+            "edge/beyond-nyquist",
+            Place(("sample_rate",)),
+            (*_named(filter, lowest), *facts),
+            "all",
+            related,
+        )
+        return
+    seen: set[Path] = set()
+    for path in beyond:
+        if path[:2] in seen:
+            continue
+        seen.add(path[:2])
+        form = "device" if rate is not None and rate.origin == "device" else ""
+        meant = edges.angular(filter, path)
+        if meant is not None:
+            form = "angular"
+        elif (meant := edges.other_convention(filter, path)) is not None:
+            form = "convention"
+        words = (("meant", quantities.show_quantity(meant)),) if meant is not None else ()
+        related = ((Place(("sample_rate",)), "the sample rate"),) if rate is not None else ()
+        yield Hit("edge/beyond-nyquist", Place(path), (*_named(filter, path), *facts, *words), form, related)
+
+
+@finding(
+    "edge/from-above-to",
+    "error",
+    {
+        "": "This {kind} band runs from {low} down to {high}, so it holds no frequency; swap the two.",
+        "equal": "This {kind} band starts and ends at {low}, so it holds no more than one frequency; give"
+        " it a width.",
+    },
+    remedies=(edges.swap_edges,),
+)
+def from_above_to(case: Case) -> Iterator[Hit]:
+    """A band whose edges are the wrong way round, or equal."""
+    for band in _in_range(case.filter):
+        low, high = (case.filter.get(*band.edge_path(side)) for side in ("low", "high"))
+        if low is not None and high is not None and band.low is not None and band.high is not None:
+            if band.low >= band.high:
+                yield Hit(
+                    "edge/from-above-to",
+                    Place(band.edge_path("low")),
+                    (("kind", band.kind), ("low", low.written), ("high", high.written)),
+                    "equal" if band.low == band.high else "",
+                    ((Place(band.edge_path("high")), "the other edge"),),
+                )
+
+
+@finding(
+    "edge/bands-out-of-order",
+    "error",
+    "This {kind} band lies below the {other} band that stands ahead of it; put the bands in order of rising"
+    " frequency.",
+)
+def bands_out_of_order(case: Case) -> Iterator[Hit]:
+    """A band that lies wholly below the one before it."""
+    for before, after in _neighbours(case.filter):
+        if _below(after, before):
+            yield Hit(
+                "edge/bands-out-of-order",
+                Place(("bands", after.index, after.kind), "key"),
+                (("kind", after.kind), ("other", before.kind)),
+                "",
+                ((Place(("bands", before.index, before.kind), "key"), "the band ahead of it"),),
+            )
+
+
+@finding(
+    "edge/bands-overlap",
+    "error",
+    {
+        "": "This {kind} band starts at {start}, below the end of the {other} band ahead of it, {end};"
+        " leave room for a transition between them.",
+        "touch": "This {kind} band starts at {start}, where the {other} band ahead of it ends, so no"
+        " transition is left; move one of the two edges.",
+        "no-from": "This {kind} band has no `from`, so it starts at 0 Hz inside the {other} band ahead of"
+        " it; give it a `from`.",
+        "no-to": "This {kind} band has no `to`, so it reaches Nyquist over the {other} band after it; give"
+        " it a `to`.",
+    },
+)
+def bands_overlap(case: Case) -> Iterator[Hit]:
+    """Neighbours that share frequencies, or touch where one of them passes."""
+    filter = case.filter
+    for before, after in _neighbours(filter):
+        if before.high is None or after.low is None or _below(after, before) or after.low > before.high:
+            continue
+        if after.low == before.high and before.kind == after.kind == "stop":
+            continue
+        end, start = filter.get(*before.edge_path("high")), filter.get(*after.edge_path("low"))
+        ahead, behind = (Place(("bands", band.index, band.kind), "key") for band in (before, after))
+        if end is None:
+            facts = (("kind", before.kind), ("other", after.kind))
+            yield Hit("edge/bands-overlap", ahead, facts, "no-to", ((behind, "the band after it"),))
+        elif start is None:
+            facts = (("kind", after.kind), ("other", before.kind))
+            yield Hit("edge/bands-overlap", behind, facts, "no-from", ((ahead, "the band ahead of it"),))
+        else:
+            yield Hit(
+                "edge/bands-overlap",
+                Place(after.edge_path("low")),
+                (
+                    ("kind", after.kind),
+                    ("other", before.kind),
+                    ("start", start.written),
+                    ("end", end.written),
+                ),
+                "touch" if after.low == before.high else "",
+                ((Place(before.edge_path("high")), "the end of the band ahead of it"),),
+            )
+
+
+@finding(
+    "edge/no-pass-band",
+    "error",
+    "No band passes anything, so a filter of gain 0 would do; add a `pass` band.",
+    needs=("bands",),
+)
+def no_pass_band(case: Case) -> Iterator[Hit]:
+    """A mask without any pass band."""
+    kinds = [kind for _, kind in case.filter.band_kinds()]
+    if kinds and "pass" not in kinds:
+        yield Hit("edge/no-pass-band", Place(("bands",), "key"))
+
+
+@finding(
+    "edge/no-stop-band",
+    "warning",
+    "No band stops anything, so a plain wire of gain 1 would do; add a `stop` band.",
+    needs=("bands",),
+)
+def no_stop_band(case: Case) -> Iterator[Hit]:
+    """A mask that only passes."""
+    kinds = {kind for _, kind in case.filter.band_kinds()}
+    if kinds == {"pass"}:
+        yield Hit("edge/no-stop-band", Place(("bands",), "key"))
+
+
+def _edges(filter: Filter) -> Iterator[tuple[Path, float | None]]:
+    """The path of every edge that is written, with its frequency in rad/sample where that can be told."""
+    for band in bands.bands(filter):
+        for side, w in (("low", band.low), ("high", band.high)):
+            path = band.edge_path(side)
+            if filter.get(*path) is not None:
+                yield path, w
+
+
+def _named(filter: Filter, path: Path) -> tuple[tuple[str, object], ...]:
+    """An edge in words."""
+    setting = filter.get(*path)
+    return (("kind", path[2]), ("edge", setting.written if setting is not None else ""))
+
+
+def _in_range(filter: Filter) -> Iterator[Band]:
+    """The bands whose edges can be read and lie between 0 Hz and Nyquist."""
+    for band in bands.bands(filter):
+        if band.low is not None and band.high is not None and 0.0 <= band.low <= NYQUIST >= band.high >= 0.0:
+            yield band
+
+
+def _neighbours(filter: Filter) -> Iterator[tuple[Band, Band]]:
+    """Each two pass or stop bands that follow one another in the file."""
+    ordered = [
+        band
+        for band in _in_range(filter)
+        if band.kind != "bounds" and band.low is not None and band.high is not None and band.low < band.high
+    ]
+    yield from itertools.pairwise(ordered)
+
+
+def _below(one: Band, other: Band) -> bool:
+    """Whether a band lies wholly below another."""
+    return one.high is not None and other.low is not None and one.high <= other.low

@@ -1,0 +1,229 @@
+"""Findings about levels: ripple, attenuation and gain windows."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+
+from bandwright.bandfile import quantities
+from bandwright.bandfile.values import Filter, Path, Place, Quantity, Setting
+from bandwright.findings.case import Case
+from bandwright.findings.rules import Find, Hit, finding
+from bandwright.forecast import bands
+from bandwright.remedies import levels
+
+LEAST_ATTENUATION_DB = 0.5
+"""A stop band that takes away less than this is none: half a dB is a gain of 0.94."""
+
+MOST_STOP_FACTOR = 10.0
+"""A stop band whose gain may be this factor or more is taken for one in dB."""
+
+
+def _those(id: str) -> Find:
+    """The slips of one kind."""
+    return lambda case: (hit for hit in _slips(case.filter) if hit.id == id)
+
+
+negative_attenuation = finding(
+    "level/negative-attenuation",
+    "error",
+    {
+        "": "An attenuation of {written} asks for a gain of {gain}, because attenuation counts downwards;"
+        " write `{meant}`.",
+        "zero": "An attenuation of {written} takes nothing away, so this stop band asks for nothing; write"
+        " how much it takes away.",
+    },
+    remedies=(levels.without_sign,),
+)(_those("level/negative-attenuation"))
+
+negative_ripple = finding(
+    "level/negative-ripple",
+    "error",
+    "A ripple of {written} is a window of negative height, because ripple counts from peak to peak; write"
+    " `{meant}`.",
+    remedies=(levels.without_sign,),
+)(_those("level/negative-ripple"))
+
+no_room = finding(
+    "level/no-room",
+    "error",
+    {
+        "ripple": "A ripple of {written} leaves the gain no room at all, so only a plain wire meets it;"
+        " write what the signal can bear.",
+        "window": "The gain may be {written} and nothing else, and no filter holds a gain exactly over a"
+        " band; leave it some room.",
+        "zero": "A gain of {written} over a whole band can't be had from any filter; write the gain that"
+        " the signal can bear.",
+    },
+)(_those("level/no-room"))
+
+window_inverted = finding(
+    "level/window-inverted",
+    "error",
+    "The least gain {low} is above the highest, {high}, so no gain lies between them; swap the two.",
+    remedies=(levels.swap_gains,),
+)(_those("level/window-inverted"))
+
+looks_linear = finding(
+    "level/looks-linear",
+    "warning",
+    {
+        "attenuation": "An attenuation of {written} stops next to nothing; if the gain {number} is meant,"
+        " write `{meant}`.",
+        "window": "The pass band is to be amplified by {low} to {high}; if these are factors, write"
+        " `{meant}`.",
+        "stop": "The stop band may be amplified by {written}; if the factor {number} is meant, write"
+        " `{meant}`.",
+    },
+    remedies=(levels.in_decibels, levels.as_factors),
+)(_those("level/looks-linear"))
+
+looks_like_decibels = finding(
+    "level/looks-like-decibels",
+    "error",
+    {
+        "negative": "A gain of {written} is below zero, which no gain in factors is; if dB are meant, write"
+        " `{meant}`.",
+        "stop": "A stop band with a gain of {written} amplifies; if dB are meant, write `{meant}`.",
+    },
+    remedies=(levels.as_decibels,),
+)(_those("level/looks-like-decibels"))
+
+
+def _slips(filter: Filter) -> Iterator[Hit]:
+    """What is wrong with the levels, each told once."""
+    for index, kind in filter.band_kinds():
+        band = ("bands", index, kind)
+        if kind == "pass":
+            yield from _ripple(filter, (*band, "ripple"))
+        if kind == "stop":
+            yield from _attenuation(filter, (*band, "attenuation"))
+        yield from _gain(filter, (*band, "gain"), kind)
+
+
+def _ripple(filter: Filter, path: Path) -> Iterator[Hit]:
+    setting, ripple = filter.get(*path), filter.quantity(*path)
+    if setting is None or ripple is None:
+        return
+    if ripple.number == 0:
+        yield Hit("level/no-room", Place(path), (("written", setting.written),), "ripple")
+    elif ripple.number < 0:
+        meant = quantities.show_quantity(Quantity(-ripple.number, ripple.unit, ripple.symmetric))
+        yield Hit("level/negative-ripple", Place(path), (("written", setting.written), ("meant", meant)))
+
+
+def _attenuation(filter: Filter, path: Path) -> Iterator[Hit]:
+    setting, level = filter.get(*path), filter.quantity(*path)
+    if setting is None or level is None:
+        return
+    decibels, written = quantities.decibels(level), ("written", setting.written)
+    if decibels == 0:
+        yield Hit("level/negative-attenuation", Place(path), (written,), "zero")
+    elif decibels < 0:
+        meant = quantities.show_quantity(Quantity(-level.number, level.unit))
+        yield Hit("level/negative-attenuation", Place(path), (written, ("gain", meant), ("meant", meant)))
+    elif decibels < LEAST_ATTENUATION_DB:
+        meant = quantities.show(-20.0 * math.log10(level.number), "level")
+        facts = (written, ("number", quantities.show_number(level.number)), ("meant", meant))
+        yield Hit("level/looks-linear", Place(path), facts, "attenuation")
+
+
+def _gain(filter: Filter, path: Path, kind: str) -> Iterator[Hit]:
+    low, high = (*path, "min"), (*path, "max")
+    least, most = filter.quantity(*low), filter.quantity(*high)
+    for side, level in ((low, least), (high, most)):
+        if level is not None and level.unit in ("x", "%") and level.number < 0:
+            yield _in_factors(filter, side, level, "negative")
+            return
+    if least is not None and most is not None:
+        yield from _window(filter, path, kind, least, most)
+    elif most is not None and kind == "stop":
+        yield from _stop_gain(filter, high, most)
+
+
+def _window(filter: Filter, path: Path, kind: str, least: Quantity, most: Quantity) -> Iterator[Hit]:
+    low, high = filter.get(*path, "min"), filter.get(*path, "max")
+    if low is None or high is None:
+        return
+    words = (("low", low.written), ("high", high.written))
+    place, other = Place((*path, "min")), ((Place((*path, "max")), "the highest gain"),)
+    bottom, top = quantities.decibels(least), quantities.decibels(most)
+    if bottom > top:
+        yield Hit("level/window-inverted", place, words, "", other)
+    elif bottom == top:
+        yield Hit("level/no-room", place, (("written", low.written),), "window", other)
+    elif kind == "pass" and least.unit == most.unit == "dB" and 0.5 <= bottom < top == 1.0:
+        # Only a window that ends at exactly 1 is taken for factors: 0.99 to 1 is the usual way to write one.
+        meant = ", ".join(quantities.show_quantity(Quantity(one.number, "x")) for one in (least, most))
+        yield Hit("level/looks-linear", place, (*words, ("meant", meant)), "window", other)
+
+
+def _stop_gain(filter: Filter, path: Path, most: Quantity) -> Iterator[Hit]:
+    setting = _written(filter, path)
+    if most.unit == "dB" and 0 < most.number < 1:
+        meant = quantities.show_quantity(Quantity(most.number, "x"))
+        facts = (("written", setting), ("number", quantities.show_number(most.number)), ("meant", meant))
+        yield Hit("level/looks-linear", Place(path), facts, "stop")
+    elif most.number == 0 and most.unit in ("x", "%"):
+        yield Hit("level/no-room", Place(path), (("written", setting),), "zero")
+    elif most.unit in ("x", "%") and quantities.linear(most) >= max(
+        MOST_STOP_FACTOR, _highest_pass_gain(filter)
+    ):
+        yield _in_factors(filter, path, most, "stop")
+
+
+def _in_factors(filter: Filter, path: Path, level: Quantity, form: str) -> Hit:
+    number = -abs(level.number) if path[2] == "stop" else level.number
+    facts = (
+        ("written", _written(filter, path)),
+        ("meant", quantities.show_quantity(Quantity(number, "dB"))),
+    )
+    return Hit("level/looks-like-decibels", Place(path), facts, form)
+
+
+def _highest_pass_gain(filter: Filter) -> float:
+    """The highest gain that a pass band allows, as a factor."""
+    tops = [band.most for band in bands.bands(filter) if band.kind == "pass" and band.most is not None]
+    return max((math.pow(10.0, top / 20.0) for top in tops if top < math.inf), default=1.0)
+
+
+def _written(filter: Filter, path: Path) -> str:
+    setting: Setting | None = filter.get(*path)
+    return setting.written if setting is not None else ""
+
+
+@finding(
+    "level/stop-above-pass",
+    "warning",
+    "The stop band may have a gain of {stop}, but the pass band may be as low as {passed}, so a plain wire"
+    " would do; stop more, or pass more evenly.",
+)
+def stop_above_pass(case: Case) -> Iterator[Hit]:
+    """A stop band that allows the gain that a pass band may have; told where nothing else is wrong."""
+    if any(True for _ in _slips(case.filter)):
+        return
+    items = bands.bands(case.filter)
+    floors = [band for band in items if band.kind == "pass" and band.least is not None]
+    lowest = min(floors, key=lambda band: band.least or 0.0, default=None)
+    if lowest is None or lowest.least is None:
+        return
+    for band in items:
+        if band.kind == "stop" and band.most is not None and band.most >= lowest.least:
+            place = Place(_level_path(case.filter, band.index, "stop"))
+            yield Hit(
+                "level/stop-above-pass",
+                place,
+                (
+                    ("stop", quantities.show(band.most, "gain")),
+                    ("passed", quantities.show(lowest.least, "gain")),
+                ),
+                "",
+                ((Place(_level_path(case.filter, lowest.index, "pass")), "the pass band's level"),),
+            )
+
+
+def _level_path(filter: Filter, index: int, kind: str) -> Path:
+    """Where the level of a band stands that bounds its gain towards the other bands."""
+    band: Path = ("bands", index, kind)
+    main = (*band, "ripple" if kind == "pass" else "attenuation")
+    return main if filter.get(*main) is not None else (*band, "gain", "min" if kind == "pass" else "max")

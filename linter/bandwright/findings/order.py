@@ -1,0 +1,269 @@
+"""Findings about orders and lengths."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from bandwright import limits
+from bandwright.bandfile import quantities
+from bandwright.bandfile.values import Place
+from bandwright.findings import gaps, maxima
+from bandwright.findings.case import CHOICE, Case
+from bandwright.findings.rules import Hit, finding
+from bandwright.findings.words import a_filter, opening
+from bandwright.forecast import reliefs
+from bandwright.forecast.forecast import MAXIMA
+from bandwright.remedies import families, relaxations
+
+NEAR = 0.25
+"""An order is near the next smaller one where it exceeds that by less than this before rounding up."""
+
+
+@finding(
+    "order/over-maximum",
+    "error",
+    {
+        "": "{family} needs order {order}, maximum {maximum}, because the transition is only {low} to"
+        " {high}; {other} needs order {less}.",
+        "alone": "{family} needs order {order}, maximum {maximum}, because the transition is only {low} to"
+        " {high}; widen it, or allow more.",
+        "pinned": "The order is pinned to {order}, over the maximum {maximum}; lower it, or allow more.",
+        "beyond": "{family} needs an order above {order}, maximum {maximum}, because the transition is only"
+        " {low} to {high}; widen it.",
+    },
+    remedies=(families.least_order_family, families.linear_phase_fir, relaxations.within_maximum_order),
+    needs=CHOICE,
+)
+def over_maximum(case: Case) -> Iterator[Hit]:
+    """Every allowed family is IIR and needs a higher order than the maximum."""
+    filter, over = case.filter, maxima.excess(case, "order")
+    if over is None:
+        yield from _beyond(case)
+        return
+    one, order = over.candidate, over.figure.value
+    facts = (("family", opening(one.family)), ("order", f"{order:g}"), ("maximum", f"{over.limit:g}"))
+    figure = (order, "")
+    if filter.count("order") is not None:
+        yield Hit("order/over-maximum", Place(("order",)), facts, "pinned", _maximum(case), figure)
+        return
+    gap = gaps.bound_by(filter, one.binding)
+    if gap is None:
+        return
+    smaller = [
+        (other.order, other.family)
+        for other in case.forecast.candidates
+        if other.order is not None and other.order <= over.limit
+    ]
+    words: tuple[tuple[str, object], ...] = ()
+    if smaller:
+        least, family = min(smaller)
+        words = (("other", a_filter(family)), ("less", least))
+    family_key = filter.get("family")
+    one_family = (
+        family_key is not None and family_key.origin == "own" and len(filter.names("family") or ()) == 1
+    )
+    place = Place(("family",)) if one_family else Place(gap.stop)
+    yield Hit(
+        "order/over-maximum",
+        place,
+        (*facts, *gap.facts, *words),
+        "" if smaller else "alone",
+        (*gap.places, *_maximum(case)),
+        figure,
+    )
+
+
+def _beyond(case: Case) -> Iterator[Hit]:
+    """No allowed family can be built, and one of them because its order is beyond all use."""
+    if maxima.built(case) or case.forecast.mask is None:
+        return
+    limit, gap = case.forecast.maximum("order"), gaps.narrowest(case.filter)
+    for one in case.forecast.candidates:
+        if one.allowed and one.kind == "iir" and one.order is None and case.forecast.selectivity is not None:
+            if gap is not None and limit is not None:
+                facts = (
+                    ("family", opening(one.family)),
+                    ("order", limits.MAX_IIR_ORDER),
+                    ("maximum", f"{limit:g}"),
+                    *gap.facts,
+                )
+                places = (*gap.places, *_maximum(case))
+                figure = (float(limits.MAX_IIR_ORDER), "")
+                yield Hit("order/over-maximum", Place(gap.stop), facts, "beyond", places, figure)
+            return
+
+
+def _maximum(case: Case, name: str = "order") -> tuple[tuple[Place, str], ...]:
+    """Where the maximum is written, as a related place."""
+    setting = case.filter.get("at_most", name)
+    if setting is None or setting.origin == "default":
+        return ()
+    return ((Place(("at_most", name)), "the maximum"),)
+
+
+@finding(
+    "order/taps-over-maximum",
+    "error",
+    {
+        "": "{family} needs {taps} taps, maximum {maximum}, because the transition is only {low} to {high};"
+        " widen it, or allow more.",
+        "about": "{family} needs {taps} taps or more, maximum {maximum}, because the transition is only"
+        " {low} to {high}; widen it, or allow more.",
+    },
+    remedies=(relaxations.raise_taps,),
+    needs=CHOICE,
+)
+def taps_over_maximum(case: Case) -> Iterator[Hit]:
+    """Every allowed family is FIR and needs more taps than the maximum."""
+    over, gap = maxima.excess(case, "taps"), gaps.narrowest(case.filter)
+    if over is None or gap is None:
+        return
+    exact = case.exact(over.figure)
+    taps = exact if exact is not None else over.figure.low
+    yield Hit(
+        "order/taps-over-maximum",
+        Place(gap.stop),
+        (
+            ("family", opening(over.candidate.family)),
+            ("taps", f"{taps:g}"),
+            ("maximum", f"{over.limit:g}"),
+            *gap.facts,
+        ),
+        "" if exact is not None else "about",
+        (*gap.places, *_maximum(case, "taps")),
+        (taps, ""),
+    )
+
+
+@finding(
+    "order/nothing-fits",
+    "error",
+    "No allowed family keeps all maxima: {nearest} comes nearest, with {name} {value}, maximum {maximum};"
+    " relax the mask, or allow more.",
+    remedies=(relaxations.raise_maxima,),
+    needs=CHOICE,
+)
+def nothing_fits(case: Case) -> Iterator[Hit]:
+    """Each maximum is kept by some family, but no family keeps them all."""
+    if maxima.keeps_all(case) or any(maxima.excess(case, name) is not None for name in MAXIMA):
+        return
+    forecast = case.forecast
+    worst = []
+    for one in maxima.built(case):
+        ratios = [
+            (figure.value / limit, name, figure.value, limit)
+            for name in MAXIMA
+            if (limit := forecast.maximum(name)) and (figure := forecast.figure(one, name)) is not None
+        ]
+        if ratios:
+            worst.append((max(ratios), one))
+    if not worst:
+        return
+    (_, name, value, limit), one = min(worst, key=lambda pair: pair[0])
+    gap = gaps.bound_by(case.filter, one.binding)
+    if gap is None:
+        return
+    yield Hit(
+        "order/nothing-fits",
+        Place(gap.stop),
+        (
+            ("nearest", a_filter(one.family)),
+            ("name", name),
+            ("value", forecast.in_words(name, value)),
+            ("maximum", forecast.in_words(name, limit)),
+        ),
+        "",
+        (*gap.places, *(place for key in MAXIMA for place in _maximum(case, key))),
+    )
+
+
+@finding(
+    "order/pinned-too-low",
+    "error",
+    "Order {order} can't meet the mask, because {family} needs order {least} for the transition from {low}"
+    " to {high}; raise the order, or widen the transition.",
+    remedies=(relaxations.release_order, families.family_of_pinned_order, relaxations.within_pinned_order),
+    needs=CHOICE,
+)
+def pinned_too_low(case: Case) -> Iterator[Hit]:
+    """The order that the filter pins is below what every allowed IIR family needs."""
+    order = case.filter.count("order")
+    found = [one for one in maxima.built(case) if one.least_order is not None]
+    if order is None or not found or any(one.least_order <= order for one in found if one.least_order):
+        return
+    one = min(found, key=lambda one: one.least_order or 0)
+    gap = gaps.bound_by(case.filter, one.binding)
+    if gap is not None:
+        facts = (("order", order), ("family", opening(one.family)), ("least", one.least_order), *gap.facts)
+        yield Hit("order/pinned-too-low", Place(("order",)), facts, "", gap.places)
+
+
+@finding(
+    "order/pinned-above-least",
+    "information",
+    "The order is pinned to {order}, and {family} meets the mask with order {least}; a lower order costs"
+    " less.",
+    remedies=(relaxations.release_order,),
+    needs=CHOICE,
+)
+def pinned_above_least(case: Case) -> Iterator[Hit]:
+    """The order that the filter pins is higher than the chosen family needs."""
+    order, chosen = case.filter.count("order"), case.chosen()
+    if order is None or chosen is None or chosen.least_order is None or chosen.least_order >= order:
+        return
+    facts = (("order", order), ("family", opening(chosen.family)), ("least", chosen.least_order))
+    yield Hit("order/pinned-above-least", Place(("order",)), facts)
+
+
+@finding(
+    "order/one-less-is-near",
+    "information",
+    "The {family} order is {unrounded} before rounding up to {order}; {change} makes it {less}.",
+    remedies=(relaxations.one_order_less,),
+    needs=CHOICE,
+)
+def one_less_is_near(case: Case) -> Iterator[Hit]:
+    """A small relaxation of one edge saves an order, of a filter that is in order as it stands."""
+    chosen = case.chosen()
+    if chosen is None or chosen.order is None or chosen.order_unrounded is None or chosen.tie:
+        return
+    if case.filter.count("order") is not None or not maxima.keeps_all(case):
+        return
+    step = 2 if case.forecast.selectivity is not None and case.forecast.selectivity.doubles else 1
+    smaller = chosen.order - step
+    if smaller < 1 or chosen.order_unrounded - smaller > NEAR * step:
+        return
+    relief = next(reliefs.reliefs(case.filter, chosen.family, smaller), None)
+    if relief is None:
+        return
+    before, after = (quantities.show_quantity(one) for one in (relief.before, relief.after))
+    yield Hit(
+        "order/one-less-is-near",
+        Place(relief.path),
+        (
+            ("family", opening(chosen.family)),
+            ("unrounded", f"{chosen.order_unrounded:.2f}"),
+            ("order", chosen.order),
+            ("change", f"{after} here instead of {before}"),
+            ("less", relief.order_after),
+        ),
+    )
+
+
+@finding(
+    "order/tie",
+    "information",
+    "{family} of order {order} meets the mask with nothing to spare, so any rounding of its coefficients"
+    " breaks it; leave some room.",
+    remedies=(relaxations.next_order,),
+    needs=CHOICE,
+)
+def tie(case: Case) -> Iterator[Hit]:
+    """The order before rounding is a whole number, so that no margin is left."""
+    chosen = case.chosen()
+    if chosen is None or not chosen.tie or chosen.order is None or case.filter.count("order") is not None:
+        return
+    gap = gaps.bound_by(case.filter, chosen.binding)
+    if gap is not None:
+        facts = (("family", opening(chosen.family)), ("order", chosen.order))
+        yield Hit("order/tie", Place(gap.stop), facts, "", gap.places)

@@ -1,0 +1,122 @@
+"""Remedies that ask for less: the least change of one number of the mask, or of one maximum."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+
+from bandwright.bandfile import quantities
+from bandwright.bandfile.values import Path, Place
+from bandwright.forecast.forecast import MAXIMA, Forecast
+from bandwright.forecast.reliefs import reliefs
+from bandwright.remedies.change import Change, Remedy
+
+
+def within_maximum_order(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Relax one number of the mask just enough that the order keeps its maximum; or raise the maximum."""
+    limit, chosen = forecast.maximum("order"), forecast.chosen
+    if limit is None or chosen is None or chosen.order is None:
+        return
+    yield from _relax(forecast, chosen.family, int(limit))
+    yield from raise_order(forecast, place)
+
+
+def within_pinned_order(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Relax one number of the mask just enough that the pinned order meets it."""
+    order, chosen = forecast.filter.count("order"), forecast.chosen
+    if order is not None and chosen is not None:
+        yield from _relax(forecast, chosen.family, order)
+
+
+def one_order_less(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Relax one number of the mask just enough to save an order (two for band-pass and band-stop)."""
+    chosen = forecast.chosen
+    if chosen is not None and chosen.order is not None:
+        yield from _relax(forecast, chosen.family, chosen.order - 1)
+
+
+def release_order(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Leave the order to the mask."""
+    yield Change(
+        "keeps-requirement",
+        "Leave the order to the mask: {after[family]} order {after[order]}",
+        ((("order",), None),),
+    )
+
+
+def next_order(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Pin the next higher order, which leaves a margin for rounding."""
+    chosen = forecast.chosen
+    if chosen is not None and chosen.order is not None:
+        step = 2 if forecast.selectivity is not None and forecast.selectivity.doubles else 1
+        yield Change(
+            "keeps-requirement",
+            "Take order {after[order]} instead of {before[order]}, which leaves a margin: {after[bits]}"
+            " coefficient bits",
+            ((("order",), str(chosen.order + step)),),
+        )
+
+
+def raise_maxima(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Raise whichever one maximum lets some family through."""
+    for name in MAXIMA:
+        yield from _raise(name)(forecast, place)
+
+
+def _raise(name: str) -> Remedy:
+    def raised(forecast: Forecast, place: Place) -> Iterator[Change]:
+        limit = forecast.maximum(name)
+        figures = [
+            figure.value
+            for one in forecast.candidates
+            if one.allowed and (figure := forecast.figure(one, name)) is not None
+        ]
+        enough = [value for value in figures if limit is not None and value > limit]
+        if enough:
+            yield Change(
+                "changes-requirement",
+                f"Raise the maximum {name} from {{before[maximum_{name}]}} to {{after[maximum_{name}]}}",
+                ((("at_most", name), _written(forecast, name, min(enough))),),
+            )
+
+    raised.__doc__ = f"Raise the maximum {name} to what the nearest family needs."
+    return raised
+
+
+raise_order = _raise("order")
+raise_taps = _raise("taps")
+raise_delay = _raise("delay")
+raise_multiplications = _raise("multiplications")
+raise_memory = _raise("memory")
+
+
+def _written(forecast: Forecast, name: str, value: float) -> str:
+    """A maximum that holds the value, as a person would write it; a delay in the unit of the old one."""
+    old = forecast.filter.quantity("at_most", name)
+    if old is None or old.unit == "samples":
+        whole = str(math.ceil(value - 1e-9))
+        return f"{whole} samples" if old is not None else whole
+    seconds = value / forecast.sample_rate_hz if forecast.sample_rate_hz else value
+    number = quantities.in_unit(seconds, old.unit)
+    return quantities.show(quantities.round_outward(number or 0.0, "up"), "time", old.unit, 7)
+
+
+def _relax(forecast: Forecast, family: str, wanted: int) -> Iterator[Change]:
+    for relief in reliefs(forecast.filter, family, wanted):
+        before, after = quantities.show_quantity(relief.before), quantities.show_quantity(relief.after)
+        yield Change(
+            "changes-requirement",
+            f"{_verb(relief.path)} from {before} to {after}: {family} order"
+            f" {relief.order_before} to {relief.order_after}",
+            ((relief.path, after),),
+        )
+
+
+def _verb(path: Path) -> str:
+    kind, key = path[2], path[-1]
+    return {
+        "from": f"Move the {kind} edge",
+        "to": f"Move the {kind} edge",
+        "ripple": "Allow more ripple,",
+        "attenuation": "Ask for less attenuation,",
+    }[str(key)]

@@ -1,0 +1,35 @@
+"""Run the tests: `python3 tests [PYTEST ARGUMENT ...]`, or the benchmarks: `python3 tests --benchmarks`.
+
+Makes an environment of its own in `.tests/venv`. Without arguments everything runs, the editors too, which
+are fetched first; arguments select tests as they do for pytest.
+"""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from pathlib import Path
+
+ROOT = Path(__file__).resolve().parent.parent
+sys.path.insert(0, str(ROOT / "linter"))
+
+from environment import ready  # noqa: E402 # it lies in the other folder
+
+
+def main() -> int:
+    python = str(ready(ROOT / ".tests" / "venv", "test") / "python")
+    if sys.argv[1:2] == ["--benchmarks"]:
+        return subprocess.call([python, "-m", "benchmarks", *sys.argv[2:]], cwd=ROOT / "tests")
+    if sys.argv[1:]:
+        return subprocess.call([python, "-m", "pytest", *sys.argv[1:]], cwd=ROOT)
+    editors = subprocess.call([python, str(ROOT / "tests" / "editors" / "install.py")], cwd=ROOT)
+    if editors:
+        print("Not every editor could be fetched, so tests of editors will fail.", file=sys.stderr)
+    return subprocess.call([python, "-m", "pytest", "-n", "2", "--dist", "loadgroup"], cwd=ROOT)
+
+
+if __name__ == "__main__":
+    try:
+        sys.exit(main())
+    except KeyboardInterrupt:
+        sys.exit(130)

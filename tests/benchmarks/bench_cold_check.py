@@ -1,0 +1,44 @@
+"""How long one `bandwright check` takes as a whole process, as a hook or a shell sees it."""
+
+from __future__ import annotations
+
+import os
+import statistics
+import subprocess
+import sys
+import tempfile
+import time
+from pathlib import Path
+
+from benchmarks.corpus import band_file
+from benchmarks.rows import Row
+
+PROGRAM = Path(sys.executable).parent / "bandwright"
+ROUNDS = 9
+
+
+def measure() -> list[Row]:
+    with tempfile.TemporaryDirectory() as folder:
+        file = Path(folder, "cold.bands.yaml")
+        file.write_text(band_file(filters=4), encoding="utf-8")
+        checks, imports = [], []
+        for _ in range(ROUNDS):  # by turns, so that both see the same load
+            checks.append(process(str(PROGRAM), "check", str(file)))
+            imports.append(process(sys.executable, "-c", "import scipy.signal"))
+    ours, theirs = statistics.median(checks), statistics.median(imports)
+    length = len(band_file(filters=4).splitlines())
+    return [
+        Row(
+            f"cold `check` of {length} lines / `import scipy.signal`",
+            ours / theirs,
+            0.25,
+            f"{1e3 * ours:.0f} ms / {1e3 * theirs:.0f} ms",
+        )
+    ]
+
+
+def process(*command: str) -> float:
+    """Seconds that a command takes from start to end, whatever it finds."""
+    start = time.perf_counter()
+    subprocess.run(command, stdout=subprocess.DEVNULL, stderr=subprocess.PIPE, check=False, env=os.environ)
+    return time.perf_counter() - start
