@@ -6,6 +6,7 @@ checks the band files of the demo.
 
 from __future__ import annotations
 
+import os
 import subprocess
 import sys
 
@@ -18,7 +19,7 @@ def main() -> int:
     command = [str(ready(ROOT / ".venv") / "bandwright"), *sys.argv[1:]]
     if sys.argv[1:]:
         return subprocess.call(command)
-    status = subprocess.call([*command, "check", str(DEMO)])
+    status = subprocess.call([*command, "check", os.path.relpath(DEMO)])
     if status > 1:
         return status
     print("\nThat was the demo. Check your own band files with: python3 linter check FILE-OR-FOLDER")

@@ -48,7 +48,7 @@ def _say(words: str) -> None:
 def _runs(python: Path) -> bool:
     """Whether an environment's Python is there and has pip; an upgrade of the system may break both."""
     try:
-        return subprocess.call([str(python), "-m", "pip", "--version"], stdout=subprocess.DEVNULL) == 0
+        return subprocess.call([str(python), "-c", "import pip"], stderr=subprocess.DEVNULL) == 0
     except OSError:
         return False
 

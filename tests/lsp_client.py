@@ -5,6 +5,7 @@ from __future__ import annotations
 import itertools
 import json
 import queue
+import re
 import subprocess
 import sys
 import threading
@@ -17,16 +18,17 @@ SERVE = (
     "from bandwright.faces.command.main import main; raise SystemExit(main())",
     "serve",
 )
-PATIENCE_S = 60.0
+PATIENCE_S = 20.0
 
 
 class Client:
     """Starts a server and talks to it; whatever it does not wait for is kept in `received`."""
 
-    def __init__(self, *options: str, command: Sequence[str] = SERVE) -> None:
-        self.process = subprocess.Popen(
-            [*command, *options], stdin=subprocess.PIPE, stdout=subprocess.PIPE, stderr=subprocess.PIPE
-        )
+    def __init__(
+        self, *options: str, command: Sequence[str] = SERVE, env: Mapping[str, str] | None = None
+    ) -> None:
+        pipe = subprocess.PIPE
+        self.process = subprocess.Popen([*command, *options], stdin=pipe, stdout=pipe, stderr=pipe, env=env)
         self.received: list[dict[str, Any]] = []
         self._ids = itertools.count(1)
         self._arrived: queue.Queue[dict[str, Any] | None] = queue.Queue()
@@ -60,11 +62,18 @@ class Client:
         return id
 
     def wait(self, **wanted: object) -> dict[str, Any]:
-        """The next message with these members; others are put into `received`."""
+        """The first message with these members, of those kept so far or to come."""
+
+        def fits(message: dict[str, Any]) -> bool:
+            return all(message.get(name) == value for name, value in wanted.items())
+
+        kept = next((at for at, message in enumerate(self.received) if fits(message)), None)
+        if kept is not None:
+            return self.received.pop(kept)
         while True:
             message = self._arrived.get(timeout=PATIENCE_S)
             assert message is not None, f"the server ended, status {self.process.wait()}: {self.errors()}"
-            if all(message.get(name) == value for name, value in wanted.items()):
+            if fits(message):
                 return message
             self.received.append(message)
 
@@ -104,6 +113,20 @@ class Client:
             if params["uri"] == uri and params.get("version") == version:
                 return list(params["diagnostics"])
 
+    def all_diagnostics(self, uri: str) -> list[dict[str, Any]]:
+        """What is on show for a file once everything has been analysed that needs no exact answer."""
+        here = {"start": {"line": 0, "character": 0}, "end": {"line": 0, "character": 0}}
+        context: dict[str, object] = {"diagnostics": []}
+        self.request(
+            "textDocument/codeAction", {"textDocument": {"uri": uri}, "range": here, "context": context}
+        )
+        published = [
+            message["params"]
+            for message in self.received
+            if message.get("method") == "textDocument/publishDiagnostics" and message["params"]["uri"] == uri
+        ]
+        return list(published[-1]["diagnostics"])
+
     def errors(self) -> str:
         assert self.process.stderr is not None
         return self.process.stderr.read().decode()
@@ -119,3 +142,40 @@ class Client:
         self.request("shutdown")
         self.notify("exit")
         return self.process.wait(PATIENCE_S)
+
+
+CODECS = {"utf-8": "utf-8", "utf-16": "utf-16-le", "utf-32": "utf-32-le"}
+UNIT_BYTES = {"utf-8": 1, "utf-16": 2, "utf-32": 4}
+
+
+def offset(text: str, position: Mapping[str, int], encoding: str = "utf-16") -> int:
+    """Where in the text a position is."""
+    starts = [0, *(match.end() for match in re.finditer(r"\r\n|\n|\r", text))]
+    start = starts[position["line"]]
+    units = text[start:].encode(CODECS[encoding])[: position["character"] * UNIT_BYTES[encoding]]
+    return start + len(units.decode(CODECS[encoding]))
+
+
+def cut_out(text: str, wanted: Mapping[str, Mapping[str, int]], encoding: str = "utf-16") -> str:
+    """The text within a range."""
+    return text[offset(text, wanted["start"], encoding) : offset(text, wanted["end"], encoding)]
+
+
+def position(text: str, place: int, encoding: str = "utf-16") -> dict[str, int]:
+    """The position of an offset."""
+    lines = re.split(r"\r\n|\n|\r", text[:place])
+    return {
+        "line": len(lines) - 1,
+        "character": len(lines[-1].encode(CODECS[encoding])) // UNIT_BYTES[encoding],
+    }
+
+
+def applied(text: str, edits: Sequence[Mapping[str, Any]], encoding: str = "utf-16") -> str:
+    """The text after edits that do not overlap."""
+    places = [
+        (offset(text, edit["range"]["start"], encoding), offset(text, edit["range"]["end"], encoding), edit)
+        for edit in edits
+    ]
+    for start, end, edit in sorted(places, key=lambda place: place[0], reverse=True):
+        text = text[:start] + str(edit["newText"]) + text[end:]
+    return text

@@ -15,6 +15,9 @@ MAX_YAML_NODES = 400_000
 MAX_PARSE_REPAIRS = 4
 """How often a block that does not parse is mended and tried again."""
 
+MAX_NAMES_COMPARED = 256
+"""How many names are looked at for the one that a misspelt name means."""
+
 MAX_IIR_ORDER = 512
 """Orders beyond this are reported as "more than"; no filter of the trade comes near."""
 
@@ -27,8 +30,11 @@ MAX_EXACT_TAPS = 2_000
 MAX_EXCHANGE_STEPS = 200
 """Steps of one exchange; most designs take fewer than ten."""
 
-MAX_LEVEL_TRIALS = 20
-"""Placings of floating pass-band windows that are tried for one length."""
+MAX_LENGTH_TRIALS = 20
+"""Exchanges for one length of an FIR filter: other places of floating windows, closer limits."""
+
+MAX_UNDECIDED_LENGTHS = 8
+"""FIR lengths that rounding leaves undecided before a search for the least one gives up."""
 
 MAX_SEARCHED_WORD_BITS = 160
 """The longest coefficient word that the exact search tries."""
@@ -38,3 +44,6 @@ MAX_ANALYSES_KEPT = 16_384
 
 MAX_ANSWERS_KEPT = 4_096
 """Answers kept for reuse; one that is in use is never dropped."""
+
+MAX_FIX_ROUNDS = 64
+"""Rounds of remedies that keep the requirement; a round mends one finding of each block."""

@@ -9,7 +9,7 @@ from scipy import signal
 from bandwright.forecast.families import FAMILIES
 from bandwright.theory.closed_form import iir
 from bandwright.theory.closed_form.selectivity import selectivity
-from bandwright.theory.closed_form.types import Mask, MaskBand
+from bandwright.theory.closed_form.types import BandKind, Mask, MaskBand
 from benchmarks.rows import Row, seconds
 
 RIPPLE_DB, ATTENUATION_DB = 1.0, 60.0
@@ -27,12 +27,14 @@ def measure() -> list[Row]:
     ]
 
 
-def mask(*bands: tuple[str, float, float]) -> Mask:
-    def band(item: int, kind: str, low: float, high: float) -> MaskBand:
-        limits = (-RIPPLE_DB, 0.0) if kind == "pass" else (None, -ATTENUATION_DB)
-        return MaskBand(kind, low * math.pi, high * math.pi, *limits, relative=True, item=item)
-
+def mask(*bands: tuple[BandKind, float, float]) -> Mask:
+    """A mask with the same ripple and the same attenuation everywhere."""
     return Mask(tuple(band(item, *one) for item, one in enumerate(bands)))
+
+
+def band(item: int, kind: BandKind, low: float, high: float) -> MaskBand:
+    least, most = (-RIPPLE_DB, 0.0) if kind == "pass" else (None, -ATTENUATION_DB)
+    return MaskBand(kind, low * math.pi, high * math.pi, least, most, relative=True, item=item)
 
 
 def compared(
@@ -40,6 +42,7 @@ def compared(
 ) -> Row:
     def ours() -> None:
         shape = selectivity(of)
+        assert shape is not None
         for theory in THEORIES:
             iir.least_order(theory, shape)
 

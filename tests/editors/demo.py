@@ -29,8 +29,8 @@ class Trouble:
     """A band file with findings, and one finding with a remedy that keeps the requirement."""
 
     file: str
-    findings: frozenset[tuple[int, str]]
-    """(line, id) of every finding that is not accepted."""
+    findings: list[tuple[int, str]]
+    """(line, id) of every finding that is not accepted, sorted."""
     finding: Place
     message: str
     remedy: str
@@ -81,7 +81,7 @@ def trouble_of(folder: Path) -> Trouble:
     (forecast,) = ask("forecast", path, name)["filters"]
     return Trouble(
         file=path.name,
-        findings=frozenset((finding["line"], finding["id"]) for finding in by_file[file]),
+        findings=sorted((finding["line"], finding["id"]) for finding in by_file[file]),
         finding=Place(finding["line"], finding["column"]),
         message=finding["message"],
         remedy=remedy["title"],

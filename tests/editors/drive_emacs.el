@@ -38,7 +38,7 @@
 (run-hooks 'post-command-hook)        ; the command loop, which a batch lacks, starts the server here
 (until "the server" #'eglot-managed-p)
 (flymake-start)
-(until "the finding" (lambda () (shows (job 'message))))
+(until "all findings" (lambda () (= (length (flymake-diagnostics)) (job 'count))))
 (defvar seen (list (cons 'mode (symbol-name major-mode))
                    (cons 'findings (vconcat (mapcar #'vconcat (findings))))))
 

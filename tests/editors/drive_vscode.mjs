@@ -87,7 +87,9 @@ const scenarios = {
     seen.status = await line(page.locator('.statusbar-item').filter({ hasText: /bandwright \d/ }));
 
     await page.keyboard.press('Control+Alt+F10');
-    const problem = page.locator('.markers-panel-container .monaco-list-row').filter({ hasText: job.message });
+    const problem = page
+      .locator('.markers-panel-container .monaco-list-row')
+      .filter({ hasText: job.message });
     seen.problem = await line(problem.first());
     await picture('problems');
     await page.keyboard.press('Control+j'); // closes the panel
@@ -122,7 +124,9 @@ const scenarios = {
     await openFile();
     const message = page.locator('.notification-toast').filter({ hasText: 'bandwright' });
     seen.message = await line(message.locator('.notification-list-item-message'));
-    seen.buttons = await message.locator('.notification-list-item-buttons-container .monaco-button').allInnerTexts();
+    seen.buttons = await message
+      .locator('.notification-list-item-buttons-container .monaco-button')
+      .allInnerTexts();
     seen.status = await line(page.locator('.statusbar-item').filter({ hasText: 'bandwright' }));
     await picture('missing');
     await message.getByText('How to Set Up').click();

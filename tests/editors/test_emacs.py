@@ -21,6 +21,7 @@ def test_findings_hover_and_remedy(project: Path, environment: dict[str, str], t
     init.write_text(SET_UP_TEXT.read_text(encoding="utf-8").partition("```elisp\n")[2].partition("```")[0])
     job = {
         "file": str(project / trouble.file),
+        "count": len(trouble.findings),
         "message": trouble.message,
         "finding": asdict(trouble.finding),
         "name": asdict(trouble.name),
@@ -39,6 +40,6 @@ def test_findings_hover_and_remedy(project: Path, environment: dict[str, str], t
     assert done.returncode == 0, done.stderr
     seen = json.loads(done.stdout)
     assert seen["mode"] == "bands-yaml-mode"
-    assert {line for line, _ in seen["findings"]} == {line for line, _ in trouble.findings}
+    assert sorted(line for line, _ in seen["findings"]) == [line for line, _ in trouble.findings]
     assert len(trouble.orders_in(seen["hover"])) >= 3, seen["hover"]
     assert trouble.remedy in seen["offered"]

@@ -28,8 +28,10 @@ def neovim(
 
 
 def test_findings_stand_beside_their_lines(neovim: Neovim, trouble: Trouble) -> None:
-    wanted = set(trouble.findings)
-    until("the findings of `bandwright check`", lambda: {found[:2] for found in neovim.findings()} == wanted)
+    def shown() -> list[tuple[int, str]]:
+        return sorted((line, id) for line, id, _, _ in neovim.findings())
+
+    until("the findings of `bandwright check`", lambda: shown() == trouble.findings)
     assert {source for _, _, source, _ in neovim.findings()} == {"bandwright"}
     neovim.go(trouble.finding)
     start = trouble.message[:40]

@@ -25,6 +25,7 @@ SETTINGS = {
     "workbench.startupEditor": "none",
     "workbench.enableExperiments": False,
     "workbench.tips.enabled": False,
+    "workbench.quickOpen.closeOnFocusLost": False,
     "workbench.colorTheme": "Default Light Modern",
     "workbench.secondarySideBar.defaultVisibility": "hidden",
     "chat.disableAIFeatures": True,
@@ -44,11 +45,14 @@ KEYS = [
 """One key each for what has a chord, or a menu, by default."""
 
 
-def build_extension() -> Path:
-    done = subprocess.run(
-        [npm(), "run", "package"], cwd=EXTENSION, capture_output=True, text=True, check=False
-    )
+def npm_run(script: str) -> None:
+    """Run one of the extension's own scripts."""
+    done = subprocess.run([npm(), "run", script], cwd=EXTENSION, capture_output=True, text=True, check=False)
     assert done.returncode == 0, done.stdout + done.stderr
+
+
+def build_extension() -> Path:
+    npm_run("package")
     return EXTENSION / "bandwright.vsix"
 
 

@@ -22,8 +22,8 @@ filters:
     family: elliptic
 """
 
-SLIPPED = SOUND.replace("family:", "familly:").replace("ripple:", "riple:")
-"""Two keys with a slip, each with one remedy that keeps the requirement."""
+SLIPPED = SOUND.replace("format:", "fromat:").replace("family:", "familly:").replace("ripple:", "riple:")
+"""Three keys with a slip, each with one remedy that keeps the requirement."""
 
 
 @pytest.fixture
@@ -31,16 +31,28 @@ def file(tmp_path: Path) -> Path:
     return tmp_path / "hoist.bands.yaml"
 
 
-def test_the_diff_shows_the_remedies_and_changes_nothing(bandwright: Run, file: Path) -> None:
-    file.write_text(SLIPPED, encoding="utf-8")
+@pytest.mark.parametrize(
+    "change",
+    [
+        str,
+        lambda text: f"\ufeff{text}",
+        lambda text: text.removesuffix("\n"),
+        lambda text: text.replace("hoist", "hoist\u2028"),
+    ],
+    ids=["plain", "byte-order mark", "no last line end", "a line separator of Unicode"],
+)
+def test_the_diff_shows_the_remedies_changes_nothing_and_applies(
+    bandwright: Run, file: Path, change: Callable[[str], str]
+) -> None:
+    file.write_text(change(SLIPPED), encoding="utf-8")
     done = bandwright("fix")
     assert done.returncode == 1
-    assert b"[key/unknown-key]" in done.stderr
-    assert b"2 remedies to apply with `--in-place`\n" in done.stderr
-    assert file.read_text(encoding="utf-8") == SLIPPED
+    assert b"hoist.bands.yaml: strain-slow: Call it `family` [key/unknown-key]\n" in done.stderr
+    assert b"3 remedies to apply with `--in-place`\n" in done.stderr
+    assert file.read_text(encoding="utf-8") == change(SLIPPED)
     patched = subprocess.run(["git", "apply", "-p0"], cwd=file.parent, input=done.stdout, check=False)
     assert patched.returncode == 0
-    assert file.read_text(encoding="utf-8") == SOUND
+    assert file.read_text(encoding="utf-8") == change(SOUND)
 
 
 @pytest.mark.parametrize("ends", ["\n", "\r\n"])
@@ -55,7 +67,7 @@ def test_in_place_every_other_byte_stays(
     file.write_bytes(bytes_of(SLIPPED))
     done = bandwright("fix", "--in-place", "hoist.bands.yaml")
     assert (done.returncode, done.stdout) == (0, b"")
-    assert b"2 remedies applied\n" in done.stderr
+    assert b"3 remedies applied\n" in done.stderr
     assert file.read_bytes() == bytes_of(SOUND)
     again = bandwright("fix", "--in-place", "hoist.bands.yaml")
     assert (again.returncode, again.stderr) == (0, b"0 remedies applied\n")
@@ -83,12 +95,3 @@ def test_standard_input_gives_a_diff_and_has_no_place(bandwright: Run) -> None:
     assert done.stdout.startswith(b"--- hoist.bands.yaml\n+++ hoist.bands.yaml\n")
     refused = bandwright("fix", "-", "--in-place", input=SLIPPED.encode())
     assert (refused.returncode, refused.stdout) == (2, b"")
-
-
-def test_the_diff_says_where_a_file_has_no_last_line_end(bandwright: Run, file: Path) -> None:
-    file.write_text(SLIPPED.removesuffix("\n"), encoding="utf-8")
-    patched = subprocess.run(
-        ["git", "apply", "-p0"], cwd=file.parent, input=bandwright("fix").stdout, check=False
-    )
-    assert patched.returncode == 0
-    assert file.read_text(encoding="utf-8") == SOUND.removesuffix("\n")

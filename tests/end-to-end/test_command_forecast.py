@@ -65,7 +65,8 @@ def test_the_tables_fit_a_terminal_and_name_every_family(bandwright: Run) -> Non
     assert (done.returncode, done.stderr) == (0, b"")
     text = done.stdout.decode()
     assert max(map(len, text.splitlines())) <= 80
-    assert [line for line in text.splitlines() if line.startswith(("strain-slow: ", "gearbox-envelope: "))]
+    names = [line for line in text.splitlines() if line in ("strain-slow", "gearbox-envelope")]
+    assert names == ["strain-slow", "gearbox-envelope"]
     for family in ("butterworth", "chebyshev-1", "chebyshev-2", "elliptic", "equiripple", "kaiser-window"):
         assert family in text
 
@@ -143,5 +144,5 @@ def test_a_filter_that_can_not_be_read_does_not_hide_the_others(bandwright: Run,
     (tmp_path / "hoist.bands.yaml").write_text(broken, encoding="utf-8")
     done = bandwright("forecast", "hoist.bands.yaml", "--certainty", "estimated")
     assert done.returncode == 0
-    assert "No forecast" in done.stdout.decode()
+    assert "no forecast while its bands can't be read" in done.stdout.decode()
     assert "equiripple" in done.stdout.decode()

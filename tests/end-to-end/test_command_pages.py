@@ -36,10 +36,12 @@ def test_the_guide_suggests_the_nearest_page(bandwright: Run) -> None:
     assert b"there is no page `order/over-maximun`; did you mean `order/over-maximum`?" in done.stderr
 
 
-@pytest.mark.parametrize("name", ["band-file", "check", "forecast"])
-def test_the_schemas_in_the_checkout_are_fresh(bandwright: Run, name: str) -> None:
-    """To renew one: `bandwright schema NAME > schemas/NAME.schema.json`."""
-    kept = ROOT / "schemas" / f"{name}.schema.json"
+@pytest.mark.parametrize(
+    ("name", "file"), [("band-file", "bandfile"), ("check", "check"), ("forecast", "forecast")]
+)
+def test_the_schemas_in_the_checkout_are_fresh(bandwright: Run, name: str, file: str) -> None:
+    """To renew one: `bandwright schema NAME > schemas/FILE.schema.json`."""
+    kept = ROOT / "schemas" / f"{file}.schema.json"
     printed = bandwright("schema", name)
     assert printed.returncode == 0
     assert printed.stdout == kept.read_bytes()
@@ -48,10 +50,10 @@ def test_the_schemas_in_the_checkout_are_fresh(bandwright: Run, name: str) -> No
 
 @pytest.mark.parametrize("command", ["check", "forecast", "fix", "guide", "schema", "serve"])
 def test_every_command_tells_what_it_takes_and_what_a_verdict_is_worth(bandwright: Run, command: str) -> None:
-    done = bandwright(command, "--help", env={"COLUMNS": "200"})
+    done = bandwright(command, "--help")
     assert (done.returncode, done.stderr) == (0, b"")
     assert done.stdout.decode().startswith(f"usage: bandwright {command}")
-    assert CAUTION in done.stdout.decode()
+    assert CAUTION in " ".join(done.stdout.decode().split())
 
 
 def test_the_help_names_every_command(bandwright: Run) -> None:

@@ -44,14 +44,12 @@ def loaded() -> set[str]:
         command = [sys.executable, "-c", PROGRAM, str(file)]
         done = subprocess.run(command, capture_output=True, check=False, text=True)
     assert done.returncode == 0, done.stdout + done.stderr
-    return {
-        name
-        for name in done.stderr.split()
-        if not name.startswith(("_", "encodings", "importlib", "sitecustom"))
-    }
+    names = {name if is_ours(name) else name.partition(".")[0] for name in done.stderr.split()}
+    return {name for name in names if not name.startswith(("_", "encodings", "importlib"))}
 
 
 def is_ours(name: str) -> bool:
+    """Ours or a library's: of the standard library's packages, only the outermost name is compared."""
     return name.partition(".")[0] not in sys.stdlib_module_names
 
 

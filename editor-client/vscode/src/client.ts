@@ -9,6 +9,7 @@ import {
   RevealOutputChannelOn,
 } from 'vscode-languageclient/node';
 import type { Server } from './findServer';
+import { middleware } from './middleware';
 import { Restarts } from './restarts';
 
 /** What a band file is, wherever it lies and whatever language the user chose for it. */
@@ -59,6 +60,7 @@ export function clientFor(server: Server, log: vscode.LogOutputChannel, gaveUp: 
     markdown: { isTrusted: false, supportHtml: false },
     initializationFailedHandler: () => false,
     errorHandler,
+    middleware,
   });
 
   async function end(): Promise<void> {

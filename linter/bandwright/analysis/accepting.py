@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from bandwright.analysis.types import Analysis
 from bandwright.bandfile import quantities
+from bandwright.bandfile.grammar import nearest
 from bandwright.bandfile.values import Filter, Place, Quantity
 from bandwright.findings.catalogue import RULES
 from bandwright.findings.rules import Hit
@@ -32,7 +33,7 @@ def entries(filter: Filter) -> Iterator[Entry]:
         {
             path[1]
             for path, _ in filter.settings
-            if path[0] == "accepted" and len(path) > 1 and isinstance(path[1], int)
+            if path[:1] == ("accepted",) and len(path) > 1 and isinstance(path[1], int)
         }
     )
     for index in indices:
@@ -90,7 +91,9 @@ def _problem(entry: Entry, analysis: Analysis, today: str) -> Hit | None:
     if entry.finding.startswith(NEVER):
         return Hit("accepted/not-acceptable", place, (("finding", entry.finding),))
     if entry.finding not in RULES:
-        return Hit("accepted/unknown-finding", place, (("finding", entry.finding),))
+        near = nearest(entry.finding, RULES)
+        facts = (("finding", entry.finding), ("nearest", near or ""))
+        return Hit("accepted/unknown-finding", place, facts)
     if entry.until is not None and entry.until < today:
         until = Place(("accepted", entry.index, "until"))
         return Hit("accepted/expired", until, (("finding", entry.finding), ("until", entry.until)))

@@ -6,20 +6,24 @@ from collections import Counter
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 
+from bandwright.analysis import accepting
 from bandwright.analysis.analyse import Memo, analyse_filter
 from bandwright.analysis.quotes import Quotes, Untold
 from bandwright.analysis.types import Analysis, Finding, Offer
 from bandwright.bandfile import edits as text_edits
 from bandwright.bandfile.reader import read
-from bandwright.bandfile.values import Document, Mend, Path, TextEdit
+from bandwright.bandfile.values import Document, Fault, Mend, Path, TextEdit
 from bandwright.findings.case import Waiting
 from bandwright.findings.catalogue import RULES
-from bandwright.findings.rules import SEVERITIES
+from bandwright.findings.rules import SEVERITIES, Hit
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.questions import Answer, Question
 from bandwright.remedies.change import Kind
 
 Ask = Callable[[Question], Answer]
+
+Found = Counter[tuple[str, Path]]
+"""How often each finding is at each path."""
 
 
 def offer(
@@ -49,6 +53,10 @@ class _Proposal:
     title: str
     kind: Kind
     edits: tuple[TextEdit, ...]
+    figures: bool = True
+    """Whether the title has figures to fill in."""
+    reveals: bool = False
+    """Corrects a slip that hid what the filter asks, so that findings may come to light."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,9 +75,11 @@ class _Bench:
         for fault in document.blocks[block].faults:
             if fault.id == self.finding.id and fault.place == self.finding.hit.place:
                 # A correction that has no rival is safe; of several readings only a person can choose.
-                kind: Kind = "keeps-requirement" if len(fault.mends) == 1 else "changes-requirement"
+                sole = len(fault.mends) == 1
+                kind: Kind = "keeps-requirement" if sole else "changes-requirement"
                 for mend in fault.mends:
-                    yield _Proposal(_mend_title(mend), kind, text_edits.mend_edits(document, block, mend))
+                    edits = text_edits.mend_edits(document, block, mend)
+                    yield _Proposal(_mend_title(mend), kind, edits, figures=False, reveals=sole)
         before = self.analysis(document)
         if before is not None:
             for remedy in RULES[self.finding.id].remedies:
@@ -98,25 +108,31 @@ class _Bench:
         if after is not None and after.open:
             return None
         old, new = self._found(self.document, before), self._found(changed, after)
-        if not self._holds(old, new):
+        if not self._holds(old, new, proposal.reveals):
             return None
-        if before is None or after is None:
+        if before is None or after is None or not proposal.figures:
             return Offer(proposal.title, proposal.kind, proposal.edits)
         title = self._titled(proposal.title, before.forecast, after.forecast)
         return Offer(title, proposal.kind, proposal.edits) if title is not None else None
 
-    def _found(self, document: Document, analysis: Analysis | None) -> Counter[tuple[str, Path]]:
-        """How often each finding is at each path, over all faults and the hits of the filter in question."""
-        found = Counter((fault.id, fault.place.path) for block in document.blocks for fault in block.faults)
-        found.update((hit.id, hit.place.path) for hit in (analysis.hits if analysis is not None else ()))
+    def _found(self, document: Document, analysis: Analysis | None) -> Found:
+        """Over all faults of a document, and the hits of the filter in question."""
+        found = Counter((fault.id, _path(fault)) for block in document.blocks for fault in block.faults)
+        if analysis is not None:
+            # An entry has expired on every late day, and on none of the early ones.
+            day = "9999-12-31" if self.finding.id == "accepted/expired" else ""
+            judged = accepting.judge(analysis.filter, analysis, day)
+            found.update((hit.id, _path(hit)) for hit, _ in judged)
         return found
 
-    def _holds(self, old: Counter[tuple[str, Path]], new: Counter[tuple[str, Path]]) -> bool:
+    def _holds(self, old: Found, new: Found, reveals: bool) -> bool:
         """Whether the finding is gone and nothing as bad has come."""
-        mine = (self.finding.id, self.finding.hit.place.path)
-        rank = SEVERITIES.index(self.finding.severity)
-        came = new - old
-        return new[mine] < old[mine] and all(SEVERITIES.index(RULES[id].severity) > rank for id, _ in came)
+        mine = (self.finding.id, _path(self.finding.hit))
+        # Of what comes, information and hints do no harm.
+        rank = min(SEVERITIES.index(self.finding.severity), SEVERITIES.index("warning"))
+        came = [RULES[id] for id, _ in new - old]
+        bad = [rule for rule in came if SEVERITIES.index(rule.severity) <= rank]
+        return new[mine] < old[mine] and all(reveals and rule.find is not None for rule in bad)
 
     def _titled(self, title: str, before: Forecast, after: Forecast) -> str | None:
         """The title with its figures, asked for where they are not there yet; None where one can't be told."""
@@ -132,8 +148,17 @@ class _Bench:
                 return None
 
 
+def _path(one: Fault | Hit) -> Path:
+    """Where a finding is, by which it is known again: entries of `accepted` count as one, as they move up."""
+    return one.place.path[:1] if one.place.path[:1] == ("accepted",) else one.place.path
+
+
 def _mend_title(mend: Mend) -> str:
     if mend.text is None:
         return "Remove this entry"
+    if not mend.text:
+        return "Remove it"
+    if "\n" in mend.text:
+        return mend.reading or "Correct these lines"
     title = f"Call it `{mend.text}`" if mend.part == "key" else f"Write `{mend.text}`"
     return f"{title}: {mend.reading}" if mend.reading else title

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 
 from bandwright.analysis import accepting
 from bandwright.analysis.places import device_line, span_of
@@ -19,14 +19,28 @@ def present(document: Document, analyses: Iterable[Analysis], today: str) -> tup
         analyses: one for each of `document.filters`, in their order.
         today: the date (UTC) as YYYY-MM-DD; it decides which accepted findings have expired.
     """
-    findings: list[Finding] = []
-    of_block = {index: filter for index, filter in document.filters}
-    for index, block in enumerate(document.blocks):
-        for fault in block.faults:
-            findings.append(_finding(document, index, _hit_of(fault), of_block.get(index), accepted=False))
-    for (index, filter), analysis in zip(document.filters, analyses, strict=True):
+    filters = dict(document.filters)
+    analysed = dict(zip(filters, analyses, strict=True))
+    return in_order(
+        finding
+        for index in range(len(document.blocks))
+        for finding in of_block(document, index, filters.get(index), analysed.get(index), today)
+    )
+
+
+def of_block(
+    document: Document, index: int, filter: Filter | None, analysis: Analysis | None, today: str
+) -> Iterator[Finding]:
+    """The findings of one block; those of its text only where its filter is not analysed."""
+    for fault in document.blocks[index].faults:
+        yield _finding(document, index, _hit_of(fault), filter, accepted=False)
+    if filter is not None and analysis is not None:
         for hit, accepted in accepting.judge(filter, analysis, today):
-            findings.append(_finding(document, index, hit, filter, accepted))
+            yield _finding(document, index, hit, filter, accepted)
+
+
+def in_order(findings: Iterable[Finding]) -> tuple[Finding, ...]:
+    """The findings by place, the worst first at each; the order is total."""
     return tuple(sorted(findings, key=_order))
 
 

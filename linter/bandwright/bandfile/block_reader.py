@@ -57,19 +57,19 @@ class BlockReader:
         self.text = text
         self.first_line = first_line
         self.lines: list[str] | None = None
-        self.own: list[tuple[Path, Setting]] = []
+        self.own: dict[Path, Setting] = {}
         self.marks: dict[Path, Marks] = {}
         self.faults: list[Fault] = []
 
     # ------------------------------------------------------------------------------------------- results
 
     def say(self, path: Path, value: object, written: str) -> None:
-        self.own.append((path, Setting(value, written)))
+        self.own[path] = Setting(value, written)
 
     def lose(self, path: Path, node: Node | None = None) -> None:
         """Notes that something stands at this path which can't be read."""
-        if not any(known == path for known, _ in self.own):
-            self.own.append((path, Setting(UNKNOWN, self.written(node) if node is not None else "")))
+        if path not in self.own:
+            self.own[path] = Setting(UNKNOWN, self.written(node) if node is not None else "")
 
     def written(self, node: Node) -> str:
         """A node as the user wrote it, on one line."""
@@ -97,7 +97,9 @@ class BlockReader:
         mends: Iterable[Mend] = (),
         related: tuple[Place, ...] = (),
     ) -> None:
-        self.faults.append(Fault(id, place, tuple(facts), form, tuple(mends), related))
+        marks = self.marks.get(place.path)
+        mends = () if marks is not None and marks.shared else tuple(mends)
+        self.faults.append(Fault(id, place, tuple(facts), form, mends, related))
 
     def wrong_kind(self, form: str, row: Key, path: Path, node: Node) -> None:
         """The fault for a value of another kind than its key asks for; the value is unknown."""
@@ -144,65 +146,92 @@ class BlockReader:
         return name
 
     def mapping(self, node: Mapping, path: Path, at: Span | None) -> None:
-        """Reads the entries of a mapping in the order of the grammar."""
+        """Reads the entries of a mapping; `at` is the alias that it stands behind."""
         inside = grammar.INSIDE[self.where].get(grammar.pattern(path), {})
         entries: dict[str, Entry] = {}
         twice: set[str] = set()
-        strangers: list[tuple[str, Entry]] = []
         lossy = node.lossy
-        for entry in _without_decimal_commas(self, node, path):
+        for entry in self.without_decimal_commas(node, path):
             key = resolved(entry.key)
             if not isinstance(key, Scalar):
                 lossy = True
                 if not isinstance(key, Lost):
                     place = Place((), span=entry.key.span)
                     self.fault("key/wrong-kind", place, (("where", self.container(path)),), "key-not-text")
-                continue
-            name = key.text
-            if name not in entries and name not in twice:
-                whole = union(entry.key.span, entry.value.span)
-                value_at = None if at is None else at
-                self.mark((*path, name), entry.key.span, entry.value.span, whole, node.flow, value_at)
-            if name in entries:
-                self.duplicate(path, name, entry, entries[name])
-                twice.add(name)
-            elif name in inside:
-                entries[name] = entry
+            elif key.text in entries:
+                self.duplicate(path, key.text, entry, entries[key.text])
+                twice.add(key.text)
             else:
-                strangers.append((name, entry))
-                entries[name] = entry
-        for name, entry in strangers:
-            cut_short = lossy and isinstance(entry.value, Scalar) and is_empty(entry.value)
-            self.unknown_key(
-                path,
-                name,
-                entry._replace(value=Lost(entry.value.span)) if cut_short else entry,
-                inside,
-                entries,
-            )
+                entries[key.text] = entry
+                whole = union(entry.key.span, entry.value.span)
+                merged = entry.key.span if isinstance(entry.key, Alias) else at
+                self.mark((*path, key.text), entry.key.span, entry.value.span, whole, node.flow, merged)
+        for name in entries:
+            if name not in inside:
+                self.unknown_key(path, name, inside, entries, lossy)
+        refused = self.conflicts(path, entries, lossy)
+        if refused and grammar.pattern(path) == ("bands", "*"):
+            self.lose(path, node)
+            return
+        refused |= twice
         for name, row in inside.items():
             found = entries.get(name)
             if found is None:
                 if row.required and not lossy and not self.is_lost((*path, name)):
                     self.missing(path, name)
-                continue
-            if name in twice:
+            elif name in refused:
                 self.lose((*path, name), found.value)
-                continue
-            reported = len(self.faults)
-            self.value(found.value, row, (*path, name), at)
-            if lossy and node.entries and found is node.entries[-1]:
-                del self.faults[reported:]  # it may only be half there
+            else:
+                reported = len(self.faults)
+                self.value(found.value, row, (*path, name), at)
+                if lossy and node.entries and found is node.entries[-1]:
+                    del self.faults[reported:]  # it may only be half there
         if lossy:
             for leaf in grammar.leaves(self.where, path):
                 if leaf[len(path)] not in entries:
                     self.lose(leaf)
             if not inside:
                 self.lose(path)
-        self.check(path, set(entries), lossy, node)
+        else:
+            self.owed(path, entries)
+
+    def without_decimal_commas(self, node: Mapping, path: Path) -> list[Entry]:
+        """The entries of a mapping, with `ripple: 0,1 dB` in brackets, which YAML takes for two, as one."""
+        if not node.flow:
+            return node.entries
+        entries: list[Entry] = []
+        for entry in node.entries:
+            lost = self.decimal_comma(entries[-1], entry, path) if entries else None
+            if lost is None:
+                entries.append(entry)
+            else:
+                entries[-1] = entries[-1]._replace(value=lost)
+        return entries
+
+    def decimal_comma(self, before: Entry, entry: Entry, path: Path) -> Lost | None:
+        """The number that a comma parts into a value and the key after it, as one that can't be read."""
+        key, value, tail = before.key, before.value, entry.key
+        if not (isinstance(key, Scalar) and isinstance(value, Scalar) and isinstance(tail, Scalar)):
+            return None
+        if not (isinstance(entry.value, Scalar) and is_empty(entry.value)):
+            return None
+        if not (_COMMA_HEAD.fullmatch(value.text) and _COMMA_TAIL.fullmatch(tail.text)):
+            return None
+        written = f"{value.text},{tail.text}"
+        row = grammar.INSIDE[self.where].get(grammar.pattern(path), {}).get(key.text)
+        trouble = quantities.parse(written, row.dimension if row and row.dimension else "figure")
+        if not isinstance(trouble, Trouble) or trouble.id != "key/decimal-comma":
+            return None
+        span = union(value.span, tail.span)
+        facts = (("key", key.text), ("written", written), *trouble.facts)
+        mends = [Mend((), mended, reading=reading, span=span) for mended, reading in trouble.mends]
+        self.fault(trouble.id, Place((*path, key.text), span=span), facts, trouble.form, mends)
+        return Lost(span)
 
     def is_lost(self, path: Path) -> bool:
-        return any(known == path[: len(known)] and setting.value is UNKNOWN for known, setting in self.own)
+        """Whether something stands at this path, or around it, that can't be read."""
+        around = (self.own.get(path[:end]) for end in range(len(path) + 1))
+        return any(setting is not None and not setting.known for setting in around)
 
     def container(self, path: Path) -> str:
         """What the reader of a message calls the mapping at this path."""
@@ -223,76 +252,79 @@ class BlockReader:
         self.fault("key/missing-key", Place(path, "key"), facts, "" if other is None else "either")
 
     def unknown_key(
-        self, path: Path, name: str, entry: Entry, inside: dict[str, Key], entries: dict[str, Entry]
+        self, path: Path, name: str, inside: dict[str, Key], entries: dict[str, Entry], lossy: bool
     ) -> None:
-        """A key that the grammar does not have here; what it most likely means is then unknown, not absent."""
+        """A key that the grammar does not have here; what it most likely means is then unknown."""
+        value = entries[name].value
         place = Place((*path, name), "key")
         facts = [("key", name), ("where", self.container(path))]
         removed = Mend((*path, name), None)
-        near = nearest(name, (other for other in inside if other not in entries))
-        if isinstance(entry.value, Lost):
-            near = near or nearest(name.split(" ")[0], (other for other in inside if other not in entries))
+        free = [other for other in inside if other not in entries]
+        near = nearest(name, free)
+        if isinstance(value, Lost) or (lossy and isinstance(value, Scalar) and is_empty(value)):
+            near = near or nearest(name.split(" ")[0], free)  # a fault of the text says what is wrong
         elif not path and name in grammar.RESERVED[self.where]:
-            return self.fault("key/reserved-key", place, facts)
+            self.fault("key/reserved-key", place, facts)
+            return
         elif self.where == "device" and grammar.key("filter", (*path, name)):
-            return self.fault("key/cannot-apply", place, facts, "device", (removed,))
-        elif near is None and (belongs := _elsewhere(self.where, name)):
-            return self.fault(
-                "key/unknown-key", place, [*facts, ("belongs", belongs)], "misplaced", (removed,)
+            self.fault("key/cannot-apply", place, facts, "device", (removed,))
+            return
+        elif near is not None:
+            self.fault(
+                "key/unknown-key", place, [*facts, ("nearest", near)], "", (Mend((*path, name), near, "key"),)
             )
-        elif near is None:
-            return self.fault("key/unknown-key", place, facts, mends=(removed,))
+        elif belongs := _elsewhere(self.where, name):
+            self.fault("key/unknown-key", place, [*facts, ("belongs", belongs)], "misplaced", (removed,))
         else:
-            mend = Mend((*path, name), near, "key")
-            self.fault("key/unknown-key", place, [*facts, ("nearest", near)], mends=(mend,))
+            self.fault("key/unknown-key", place, facts, "", (removed,))
         if near is not None:
-            self.lose((*path, near), entry.value)
-        return None
+            self.lose((*path, near), value)
 
-    def check(self, path: Path, names: set[str], lossy: bool, node: Mapping) -> None:
-        """What the keys of one mapping owe each other."""
-        kind = path[-1] if path else ""
-        if grammar.pattern(path) == ("bands", "*"):
-            known = [name for name in names if name in grammar.BAND_KINDS]
-            if lossy or len(names) != 1:
-                self.own = [(known_path, s) for known_path, s in self.own if known_path[: len(path)] != path]
-                if not lossy:
-                    found = ", ".join(name for name in grammar.BAND_KINDS if name in known)
-                    self.fault("key/wrong-kind", Place(path), (("found", found),), "band-keys")
-            if lossy or len(names) != 1 or not known:
-                self.lose(path, node)
-        elif grammar.pattern(path[:-1]) == ("bands", "*"):
-            either = {"pass": ("ripple", "gain"), "stop": ("attenuation", "gain")}.get(str(kind))
-            if either is not None and not lossy:
-                written = [name for name in either if name in names]
-                if len(written) == 2:
-                    self.beside(path, "gain", either[0])
-                elif not written and not any(self.is_lost((*path, name)) for name in either):
-                    self.missing(path, *either)
-            for edge in ("from", "to"):
-                if "at" in names and edge in names:
-                    self.beside(path, edge, "at")
-        elif grammar.pattern(path) == ("accepted", "*"):
-            if "reason" not in names and not lossy and not self.is_lost((*path, "reason")):
+    def conflicts(self, path: Path, entries: dict[str, Entry], lossy: bool) -> set[str]:
+        """The keys of one mapping that can't be taken, because they say the same thing in two ways."""
+        pattern = grammar.pattern(path)
+        found: set[str] = set()
+        if pattern == ("bands", "*"):
+            if len(entries) != 1 and not lossy:
+                kinds = ", ".join(name for name in grammar.BAND_KINDS if name in entries)
+                self.fault("key/wrong-kind", Place(path), (("found", kinds),), "band-keys")
+            if len(entries) != 1 or lossy:
+                found.update(entries)
+        elif pattern[:-1] == ("bands", "*"):
+            for name, other in (("gain", "ripple"), ("gain", "attenuation"), ("from", "at"), ("to", "at")):
+                if name in entries and other in entries and other in grammar.INSIDE[self.where][pattern]:
+                    facts = (("key", name), ("beside", other), ("where", self.container(path)))
+                    place = Place((*path, name), "key")
+                    self.fault("key/cannot-apply", place, facts, "beside", (Mend((*path, name), None),))
+                    found |= {name, other}
+        return found
+
+    def owed(self, path: Path, entries: dict[str, Entry]) -> None:
+        """What one mapping must hold besides the keys that are always required."""
+        pattern = grammar.pattern(path)
+        either = _EITHER.get(pattern)
+        if either is not None:
+            if not any(name in entries or self.is_lost((*path, name)) for name in either):
+                self.missing(path, *either)
+        elif pattern == ("bands", "*"):
+            if not any(name in entries or self.is_lost((*path, name)) for name in grammar.BAND_KINDS):
+                self.lose(path)
+        elif pattern == ("accepted", "*"):
+            if "reason" not in entries and not self.is_lost((*path, "reason")):
                 self.no_reason(path, "missing")
-        elif path == ("coefficients",) and not lossy and "feedback" not in names:
-            if any(known[-1] == "a" for known in self.marks if known[:1] == path and len(known) > 1):
-                facts = (("key", "feedback"), ("where", "coefficients"))
-                mends = (Mend((*path, "feedback"), "subtracted"), Mend((*path, "feedback"), "added"))
-                self.fault("key/missing-key", Place(path, "key"), facts, "feedback", mends)
+        elif path == ("coefficients",) and "feedback" not in entries:
+            self.feedback_missing(path)
 
-    def beside(self, path: Path, name: str, other: str) -> None:
-        """Two keys that say the same thing in two ways: neither can be taken."""
-        facts = (("key", name), ("beside", other), ("where", self.container(path)))
-        place = Place((*path, name), "key")
-        self.fault("key/cannot-apply", place, facts, "beside", (Mend((*path, name), None),))
-        for lost in (name, other):
-            below = (*path, lost)
-            self.own = [(known, s) for known, s in self.own if known[: len(below)] != below]
-            self.lose(below)
+    def feedback_missing(self, path: Path) -> None:
+        """Coefficients `a` are useless while nobody says whether their products are added or subtracted."""
+        if any(known[:1] == path and known[-1] == "a" for known in self.marks if len(known) > 1):
+            facts = (("key", "feedback"), ("where", "coefficients"))
+            mends = (Mend((*path, "feedback"), "subtracted"), Mend((*path, "feedback"), "added"))
+            self.fault("key/missing-key", Place(path, "key"), facts, "feedback", mends)
 
     def no_reason(self, path: Path, form: str) -> None:
-        finding = next((s.written for known, s in self.own if known == (*path, "finding")), "")
+        said = self.own.get((*path, "finding"))
+        finding = said.written if said is not None else ""
         place = Place(path, "key") if form == "missing" else Place((*path, "reason"))
         self.fault("accepted/no-reason", place, (("finding", finding),) if finding else (), form)
 
@@ -427,42 +459,14 @@ class BlockReader:
         self.fault(trouble.id, Place(path), facts, trouble.form, mends)
 
 
+_EITHER: Final[dict[tuple[str, ...], tuple[str, str]]] = {
+    ("bands", "*", "pass"): ("ripple", "gain"),
+    ("bands", "*", "stop"): ("attenuation", "gain"),
+}
+"""Mappings that must hold one key of two."""
 _FINDING: Final = re.compile(r"[a-z]+(?:-[a-z]+)*/[a-z0-9]+(?:-[a-z0-9]+)*")
 _COMMA_TAIL: Final = re.compile(r"[0-9]+(?: *[A-Za-z%×π°µμ]+)?")
 _COMMA_HEAD: Final = re.compile(r"(?:±|\+-|[-+−]?) *[0-9]+")
-
-
-def _without_decimal_commas(reader: BlockReader, node: Mapping, path: Path) -> list[Entry]:
-    """The entries of a mapping, with `ripple: 0,1 dB` in brackets, which YAML takes for two, as one."""
-    if not node.flow:
-        return node.entries
-    entries: list[Entry] = []
-    for entry in node.entries:
-        tail, before = entry.key, entries[-1] if entries else None
-        if (
-            before is not None
-            and isinstance(tail, Scalar)
-            and isinstance(before.key, Scalar)
-            and isinstance(before.value, Scalar)
-            and isinstance(entry.value, Scalar)
-            and is_empty(entry.value)
-            and _COMMA_TAIL.fullmatch(tail.text)
-            and _COMMA_HEAD.fullmatch(before.value.text)
-        ):
-            written = f"{before.value.text},{tail.text}"
-            row = grammar.INSIDE[reader.where].get(grammar.pattern(path), {}).get(before.key.text)
-            trouble = quantities.parse(written, row.dimension or "figure" if row else "figure")
-            span = union(before.value.span, tail.span)
-            if isinstance(trouble, Trouble) and trouble.id == "key/decimal-comma":
-                facts = (("key", before.key.text), ("written", written), *trouble.facts)
-                mends = [Mend((), mended, reading=reading, span=span) for mended, reading in trouble.mends]
-                reader.fault(
-                    trouble.id, Place((*path, before.key.text), span=span), facts, trouble.form, mends
-                )
-                entries[-1] = Entry(before.key, Lost(span))
-                continue
-        entries.append(entry)
-    return entries
 
 
 def is_empty(node: Scalar) -> bool:

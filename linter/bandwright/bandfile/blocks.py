@@ -7,12 +7,13 @@ a changed one is read again, and a slip in one never hides another.
 from __future__ import annotations
 
 import re
+from functools import cache
 from typing import Final, Literal, NamedTuple
 
 from ruamel.yaml.error import MarkedYAMLError, YAMLError
 
 from bandwright.bandfile.grammar import INSIDE, nearest
-from bandwright.bandfile.nodes import Composer, Lost, TooDeepError, Tree, parseable, too_deep
+from bandwright.bandfile.nodes import Composer, TooDeepError, Tree, parseable
 from bandwright.bandfile.salvage import salvaged
 from bandwright.bandfile.values import Block, Document, Place, Span
 
@@ -34,13 +35,22 @@ class Piece(NamedTuple):
     """Of the first name in its section."""
 
 
-_LINE: Final = re.compile(r"^([ \t]*)([^\s#])", re.M)
-_SECTION: Final = re.compile(r"[\"']?([A-Za-z_]+)[\"']? *:?[ \t]*\r?(?:#.*)?$", re.M)
-_TOP_KEY: Final = re.compile(r"[\"']?(?:format|masks|together|devices|filters)[\"']? *:(?=\s|$)", re.M)
-_FIRST_KEY: Final = re.compile(
-    r"[^\n:]+:[ \t]*\r?(?:#.*)?\n(?:[ \t]*\r?(?:#.*)?\n)*[ \t]+[\"']?([\w-]+)[\"']? *:(?=\s|$)", re.M
+_REST: Final = r"[ \t]*\r?(?:#.*)?$"
+_DEEPEST: Final = 200
+"""No name stands deeper; it bounds the patterns that are compiled."""
+_SECTION: Final = re.compile(rf"[\"']?([A-Za-z_]+)[\"']? *:?{_REST}", re.M)
+_TOP_KEY: Final = re.compile(
+    r"(?:[\"']?(?:format|masks|together|devices|filters)[\"']? *:|---|\.\.\.)(?=\s|$)", re.M
 )
+_KEY_LIKE: Final = re.compile(r"[^\n]*?:(?=\s|$)", re.M)
 _KEY: Final = re.compile(r"[\"']?([\w-]+)[\"']? *:(?=\s|$)", re.M)
+_NAME: Final = re.compile(rf"[\"']?\w[^\n:]*:(?:[ \t]+[{{&*].*|{_REST})", re.M)
+_WORD: Final = re.compile(rf"[\w.-]+{_REST}", re.M)
+_BELOW: Final = re.compile(r"\n(?:[ \t]*\r?(?:#.*)?\n)*([ \t]*)")
+_FIRST_KEY: Final = re.compile(
+    rf"[^\n:]+:{_REST}(?:\n[ \t]*\r?(?:#.*)?$)*\n[ \t]+[\"']?([\w-]+)[\"']? *:(?=\s|$)", re.M
+)
+_LIST_BELOW: Final = re.compile(rf"[^\n:]+:{_REST}(?:\n[ \t]*\r?(?:#.*)?$)*\n[ \t]+-(?=\s|$)", re.M)
 _DASH: Final = re.compile(r"-(?=\s|$)", re.M)
 _REFERENCE: Final = re.compile(
     r"(?:^[ \t]*|[:?\-,\[{][ \t]+|[\[{,])[&*][^\s,\[\]{}]|^[ \t]*(?:- +)?<<[ \t]*:", re.M
@@ -57,85 +67,120 @@ def with_line_feeds(text: str) -> str:
 def reads_whole(text: str) -> bool:
     """Whether the text can't be cut: anchors reach across blocks, and brackets ignore lines."""
     first = _START.search(text)
-    return (first is not None and first[1] in "{[?") or _REFERENCE.search(text) is not None
+    if first is not None and first[1] in "{[?":
+        return True
+    marked = "*" in text or "&" in text or "<<" in text  # far quicker than the search, and mostly false
+    return marked and _REFERENCE.search(text) is not None
+
+
+@cache
+def _line_above(indent: int) -> re.Pattern[str]:
+    """Matches the start of a line with content, less deep than `indent`: its blanks and its first letter."""
+    return re.compile(rf"^([ \t]{{0,{indent - 1}}})([^\s#])", re.M)
 
 
 def cut(text: str) -> list[Piece]:
     """The pieces of a text whose lines all end in LF, in order and without gaps.
 
-    A device or filter starts at its name and runs to the next one. A line that stands less deep than what
-    the block began with is taken for the next name, even if it is only half typed, so that it breaks
-    nothing but itself; a closing bracket, a list item, or a key that belongs in the block is not.
+    A device or filter starts at its name and runs to the next one. A name may stand ill-indented and may
+    be half typed, so that it breaks nothing but itself; a line that is no name, wherever it stands, stays
+    in the block that it was found in.
     """
     pieces: list[Piece] = []
-    section: Kind = "top"
-    kind: Kind = "top"
-    unseen = dict(SECTIONS)
-    start = line = first_line = 0
-    name_indent = usual = -1
-    body_indent: int | None = None
-    for match in _LINE.finditer(text):
+    state = _State()
+    start = line = first_line = usual = 0
+    searched = 0
+    while match := _line_above(state.depth_of_interest()).search(text, searched):
         blank, letter = match.groups()
-        indent = len(blank)
-        if indent and (section == "top" or (body_indent is not None and indent >= body_indent)):
+        indent, at = len(blank), match.start(2)
+        searched = match.end()
+        ends, kind = state.deeper(text, at, blank, letter) if indent else state.first_column(text, at, letter)
+        if not ends:
             continue
-        if letter in "]},":
-            continue
-        at = match.start(2)
-        next_kind: Kind = section
-        if indent == 0:
-            named = _SECTION.match(text, at)
-            name = nearest(named[1], unseen) if named else None
-            if name is not None:
-                section, next_kind = unseen.pop(name), "top"
-                name_indent = usual = -1
-            elif _TOP_KEY.match(text, at):
-                section = next_kind = "top"
-            elif not _is_block(text, at, section):
-                next_kind = "top"
-            if next_kind == kind == "top":
-                continue
-        else:
-            dash = _DASH.match(text, at) is not None
-            if name_indent < 0:
-                if dash:
-                    section = "top"
-                    continue
-                usual = indent
-            elif dash:
-                continue
-            elif indent > name_indent:
-                if kind == "top":
-                    continue
-                if body_indent is None:
-                    body_indent = indent
-                    continue
-                if _is_key(text, at, section):
-                    continue
-            elif "\t" in blank and kind != "top" and _is_key(text, at, section):
-                continue
         offset = match.start()
         if offset > start:
-            pieces.append(Piece(kind, first_line, start, offset, max(name_indent, 0), max(usual, 0)))
+            pieces.append(Piece(state.kind, first_line, start, offset, state.name_indent, usual))
             line += text.count("\n", start, offset)
             start, first_line = offset, line
-        kind, body_indent = next_kind, None
-        if kind != "top":
-            name_indent = indent
-    pieces.append(Piece(kind, first_line, start, len(text), max(name_indent, 0), max(usual, 0)))
+        state.kind, state.body_indent, state.name_indent = kind, None, indent
+        usual = indent if state.usual < 0 else state.usual
+    pieces.append(Piece(state.kind, first_line, start, len(text), state.name_indent, usual))
     return pieces
 
 
-def _is_key(text: str, at: int, section: Kind) -> bool:
-    """Whether a key of a device or filter stands here, rather than a name."""
-    named = _KEY.match(text, at)
-    return named is not None and named[1] in INSIDE[section][()]
+class _State:
+    """What a cut knows of the lines before."""
 
+    def __init__(self) -> None:
+        self.section: Kind = "top"
+        self.kind: Kind = "top"
+        self.unseen = dict(SECTIONS)
+        self.usual = -1
+        """The indent of the first name in the section."""
+        self.name_indent = 0
+        self.body_indent: int | None = None
 
-def _is_block(text: str, at: int, section: Kind) -> bool:
-    """Whether a name in the first column is a device's or filter's all the same, by what stands below it."""
-    first = _FIRST_KEY.match(text, at) if section != "top" else None
-    return first is not None and first[1] in INSIDE[section][()]
+    def depth_of_interest(self) -> int:
+        """Lines from this indent on are part of what they stand in, for certain."""
+        return 1 if self.section == "top" else min(self.body_indent or _DEEPEST, _DEEPEST)
+
+    def first_column(self, text: str, at: int, letter: str) -> tuple[bool, Kind]:
+        """Whether a line in the first column ends the piece before it, and what starts there."""
+        if letter in "]}," or _DASH.match(text, at):
+            return False, "top"
+        named = _SECTION.match(text, at)
+        name = nearest(named[1], self.unseen) if named else None
+        if name is not None:
+            self.section, self.usual = self.unseen.pop(name), -1
+        elif _TOP_KEY.match(text, at):
+            self.section = "top"
+        elif self.section != "top" and self.starts_block(text, at):
+            return True, self.section
+        elif not _KEY_LIKE.match(text, at) or self.is_inside(text, at):
+            return False, "top"
+        return self.kind != "top", "top"
+
+    def starts_block(self, text: str, at: int) -> bool:
+        """Whether the name of a device or filter stands here, by the first key below it."""
+        first = _FIRST_KEY.match(text, at)
+        return first is not None and first[1] in INSIDE[self.section][()]
+
+    def is_inside(self, text: str, at: int) -> bool:
+        """Whether the next line with content goes on with the block's body."""
+        below = _BELOW.search(text, at)
+        return (
+            self.kind != "top" and below is not None and len(below[1]) >= (self.body_indent or self.usual + 1)
+        )
+
+    def deeper(self, text: str, at: int, blank: str, letter: str) -> tuple[bool, Kind]:
+        """The same for a line further right, below `devices` or `filters`."""
+        indent = len(blank)
+        dash = _DASH.match(text, at) is not None
+        if self.usual < 0 and dash and self.kind == "top":
+            self.section = "top"  # a list has no names
+        if letter in "]}," or dash:
+            return False, "top"
+        named = _KEY.match(text, at)
+        known = named is not None and named[1] in INSIDE[self.section][()]
+        if self.usual < 0:
+            if known and not self.starts_block(text, at):
+                return self.kind == "top", self.section  # keys without a name above them
+            self.usual = indent
+            return True, self.section
+        if indent > self.usual:
+            if self.kind == "top":
+                return False, "top"
+            if self.body_indent is None:
+                self.body_indent = indent
+                return False, "top"
+        # An ill-indented key of the block stays in it; but a name may be the same as a key.
+        ill_indented = indent != self.usual or "\t" in blank or _LIST_BELOW.match(text, at)
+        if known and self.kind != "top" and ill_indented:
+            return False, "top"
+        if _NAME.match(text, at):
+            return True, self.section
+        word = _WORD.match(text, at) is not None
+        return word and (indent == self.usual or not self.is_inside(text, at)), self.section
 
 
 # ---------------------------------------------------------------------------------------------- parsing
@@ -147,11 +192,20 @@ def parse(text: str, top: bool = False) -> Tree:
     try:
         composer = Composer(clean, 0, frozenset())
         root = composer.compose()
-    except TooDeepError as deep:
-        return Tree(Lost(deep.span), (*faults, too_deep(deep)), False)
-    except YAMLError as error:
+    except (TooDeepError, YAMLError) as error:
         return salvaged(clean, faults, error, top)
     return Tree(root, (*faults, *composer.faults), not composer.faults and not faults)
+
+
+def parse_whole(text: str) -> Tree | None:
+    """The tree of a text that the parser takes as it is, else None."""
+    clean, faults = parseable(text)
+    try:
+        composer = Composer(clean, 0, frozenset())
+        root = composer.compose()
+    except (TooDeepError, YAMLError):
+        return None
+    return None if faults or composer.faults else Tree(root)
 
 
 def opens_at_end(text: str) -> bool:

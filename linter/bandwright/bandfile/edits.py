@@ -94,7 +94,7 @@ def as_yaml(text: str, flow: bool = False) -> str:
     if _NEEDS_QUOTES.search(text) is None and not (flow and _NEEDS_QUOTES_IN_FLOW.search(text)):
         return text
     if re.search(r"[\x00-\x1f\x7f-\x9f\u2028\u2029\ud800-\udfff]", text):
-        escaped = (f"\\u{ord(c):04x}" if not c.isprintable() else "\\" + c if c in '"\\' else c for c in text)
+        escaped = (f"\\U{ord(c):08x}" if not c.isprintable() else "\\" + c if c in '"\\' else c for c in text)
         return '"' + "".join(escaped) + '"'
     return "'" + text.replace("'", "''") + "'"
 
@@ -147,7 +147,7 @@ class _Editor:
             return ()
         rewritten = {path: text for path, text in changes.items() if text is not None and path in marks}
         removed = {path for path, text in changes.items() if text is None and path in marks}
-        added = _wrapped({path: text for path, text in changes.items() if text is not None}, marks)
+        added = self.wrapped({p: text for p, text in changes.items() if text is not None and p not in marks})
         for path in sorted(removed, key=len, reverse=True):
             while len(path) > 1 and path[:-1] not in {new[:-1] for new in added}:
                 if not set(self.children(path[:-1])) <= removed:
@@ -163,6 +163,21 @@ class _Editor:
         if () in removed:
             found.append(self.without_block())
         return tuple(sorted(found, key=lambda edit: edit.span))
+
+    def wrapped(self, changes: dict[Path, str]) -> dict[Path, str]:
+        """The entries to add, each in a mapping that exists: a missing one comes whole, in brackets."""
+        added: dict[Path, str] = {}
+        missing: dict[Path, list[Path]] = {}
+        for path in sorted(changes, key=self.place):
+            if len(path) <= 1 or path[:-1] in self.block.marks:
+                added[path] = changes[path]
+            else:
+                missing.setdefault(path[:-1], []).append(path)
+        whole = {}
+        for container, paths in missing.items():
+            inside = ", ".join(self.entry(path, changes[path], True) for path in paths)
+            whole[container] = f"[{inside}]" if isinstance(paths[0][-1], int) else f"{{{inside}}}"
+        return added | self.wrapped(whole) if whole else added
 
     def is_shared(self, path: Path) -> bool:
         """Whether a path, or the mapping that it would be added to, stands behind an alias."""
@@ -319,10 +334,9 @@ class _Editor:
         texts = [self.entry(path, new[path], flow) for path in paths]
         if flow:
             if before is not None:
-                end = marks[before].all[2:]
-                return self.replace(Span(*end, *end), "".join(f", {text}" for text in texts))
-            start = marks[siblings[0]].all[:2]
-            return self.replace(Span(*start, *start), "".join(f"{text}, " for text in texts))
+                return self.replace(_end(marks[before].all), "".join(f", {text}" for text in texts))
+            first = marks[siblings[0]].all
+            return self.replace(_between(first, first), "".join(f"{text}, " for text in texts))
         item = isinstance(paths[0][-1], int)
         column = marks[siblings[0]].all.column if item else marks[siblings[0]].key.column
         lead = " " * column + ("- " if item else "")
@@ -369,7 +383,7 @@ class _Editor:
         if items:
             last = marks[items[-1]]
             if last.flow:
-                return (self.replace(Span(*last.all[2:], *last.all[2:]), f", {in_brackets}"),)
+                return (self.replace(_end(last.all), f", {in_brackets}"),)
             return (self.below(last.all.end_line, last.all.column, entries),)
         if path in marks:
             return self.change({path: f"[{in_brackets}]"})
@@ -389,30 +403,6 @@ class _Editor:
         return self.replace(Span(line, end, line, end), text)
 
 
-def _wrapped(changes: dict[Path, str], marks: Mapping[Path, Marks]) -> dict[Path, str]:
-    """The entries to add, each in a mapping that exists: a missing one comes with its entries, in brackets."""
-    added: dict[Path, str] = {}
-    missing: dict[Path, dict[Path, str]] = {}
-    for path, text in changes.items():
-        if path in marks:
-            continue
-        if len(path) <= 1 or path[:-1] in marks:
-            added[path] = text
-        else:
-            missing.setdefault(path[:-1], {})[path] = text
-    if missing:
-        inner = {}
-        for container, entries in missing.items():
-            parts = []
-            for path, text in sorted(entries.items(), key=lambda item: str(item[0])):
-                value = text if text[:1] in ("{", "[") else as_yaml(text, True)
-                parts.append(value if isinstance(path[-1], int) else f"{path[-1]}: {value}")
-            in_list = isinstance(next(iter(entries))[-1], int)
-            inner[container] = ("[{}]" if in_list else "{{{}}}").format(", ".join(parts))
-        added.update(_wrapped(inner, marks))
-    return added
-
-
 def _union(first: Span, last: Span) -> Span:
     return Span(first.line, first.column, last.end_line, last.end_column)
 
@@ -420,3 +410,8 @@ def _union(first: Span, last: Span) -> Span:
 def _between(first: Span, last: Span) -> Span:
     """From where one span starts to where another starts."""
     return Span(first.line, first.column, last.line, last.column)
+
+
+def _end(span: Span) -> Span:
+    """The empty span behind another."""
+    return Span(span.end_line, span.end_column, span.end_line, span.end_column)

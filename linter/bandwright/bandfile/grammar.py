@@ -7,8 +7,10 @@ pattern inside its block, with `"*"` for any index or name: `("bands", "*", "pas
 from __future__ import annotations
 
 from collections.abc import Iterable
+from itertools import islice
 from typing import Final, Literal, NamedTuple
 
+from bandwright import limits
 from bandwright.bandfile.values import Path
 
 FORMAT: Final = "bandwright/1"
@@ -736,23 +738,24 @@ def rank(path: Path) -> tuple[int, int]:
 
 
 def nearest(word: str, names: Iterable[str]) -> str | None:
-    """The name that `word` most likely means: a start of it, or a few slips away; None where none is near."""
+    """The name that `word` most likely means: a start of it, or a few slips away; None where none is near.
+
+    Only the first `limits.MAX_NAMES_COMPARED` names are looked at.
+    """
     wanted = word.casefold().replace("_", "-")
     best: tuple[float, str] | None = None
-    for name in names:
+    for name in islice(names, limits.MAX_NAMES_COMPARED):
         known = name.casefold().replace("_", "-")
-        if len(wanted) >= 3 and known.startswith(wanted):
-            slips = 0.5
-        else:
-            slips = _slips(wanted, known, max(1, len(known) // 3))
-        if slips <= max(1, len(known) // 3) and (best is None or slips < best[0]):
+        most = len(known) // 3
+        slips = 0.5 if len(wanted) >= 3 and known.startswith(wanted) else _slips(wanted, known, most)
+        if slips <= max(most, 0.5) and (best is None or slips < best[0]):
             best = slips, name
     return best[1] if best else None
 
 
 def _slips(word: str, name: str, most: int) -> float:
-    """Letters to add, drop, change or swap with a neighbour, to turn `word` into `name`; counted up to `most`."""
-    if abs(len(word) - len(name)) > most:
+    """Letters to add, drop, change or swap to turn `word` into `name`; counted up to about `most`."""
+    if abs(len(word) - len(name)) > most or len(set(word) - set(name)) > most:
         return most + 1
     before: list[int] = []
     row = list(range(len(name) + 1))

@@ -94,6 +94,8 @@ _NOT_TEXT: Final = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x84\x86-\x9f\ud8
 _SILENT_BREAKS: Final = {ord(mark): " " for mark in "\x85\u2028\u2029\ufeff"}
 """Line breaks to the parser and to nobody else, and the byte-order mark; none is worth a finding."""
 
+_COLON: Final = re.compile(r" *:")
+
 REPLACED: Final = "\ufffd"
 """Stands in the trees for every character that is not text."""
 
@@ -201,7 +203,7 @@ class Composer:
             key = self.node(child, depth + 1)
             value = self.node(self.next_event(), depth + 1)
             if isinstance(value, Scalar) and not value.text and not value.quoted:
-                value = value._replace(span=after(key.span))
+                value = value._replace(span=self.after(key.span))
             if isinstance(key, Scalar) and key.text == "<<" and isinstance(value, Alias | Sequence):
                 merged.extend(_merged(value))
             else:
@@ -248,16 +250,24 @@ class Composer:
         self.nodes += size
         return Alias(node, span)
 
-    def trimmed(self, span: Span) -> Span:
-        """A block scalar's span without the blank lines after it."""
+    def after(self, key: Span) -> Span:
+        """Where the value of a key stands that has none: behind its colon, if it has one."""
+        text = self.line(key.end_line)
+        colon = _COLON.match(text, key.end_column)
+        column = colon.end() if colon else key.end_column
+        return Span(key.end_line, column, key.end_line, column)
+
+    def line(self, number: int) -> str:
         if self.lines is None:
             self.lines = self.text.split("\n")
-        end = min(span.end_line - self.first_line, len(self.lines) - 1)
-        if span.end_column == 0:
+        return self.lines[min(number - self.first_line, len(self.lines) - 1)]
+
+    def trimmed(self, span: Span) -> Span:
+        """A block scalar's span without the blank lines after it."""
+        end = span.end_line - (span.end_column == 0)
+        while end > span.line and not self.line(end).strip():
             end -= 1
-        while end > span.line - self.first_line and not self.lines[end].strip():
-            end -= 1
-        return Span(span.line, span.column, end + self.first_line, len(self.lines[end].rstrip()))
+        return Span(span.line, span.column, end, len(self.line(end).rstrip()))
 
 
 def _merged(value: Alias | Sequence) -> Iterator[Entry]:
@@ -271,11 +281,6 @@ def _merged(value: Alias | Sequence) -> Iterator[Entry]:
     if isinstance(target, Mapping):
         for entry in target.entries:
             yield Entry(Alias(entry.key, value.span), Alias(entry.value, value.span))
-
-
-def after(key: Span) -> Span:
-    """Where the value of a key stands that has none: behind the colon."""
-    return Span(key.end_line, key.end_column + 1, key.end_line, key.end_column + 1)
 
 
 def resolved(node: Node) -> Scalar | Mapping | Sequence | Lost:

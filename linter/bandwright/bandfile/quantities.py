@@ -276,11 +276,11 @@ def in_unit(value: float, unit: str, rate_hz: float | None = None) -> float | No
 
 
 def show_number(number: float, digits: int = 4) -> str:
-    """The number in `digits` significant digits, in more (up to 7) only where these are all it has."""
+    """The number in `digits` significant digits, in more (up to 6) only where these are all it has."""
     if number == 0 or not math.isfinite(number):
         return "0" if number == 0 else f"{number}"
     short = f"{number:.{digits}g}"
-    full = f"{number:.7g}"
+    full = f"{number:.6g}"
     text = full if float(full) == number else short
     if "e" not in text:
         return text

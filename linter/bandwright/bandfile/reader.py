@@ -7,7 +7,7 @@ defaults under the keys of each filter.
 from __future__ import annotations
 
 import re
-from typing import NamedTuple
+from typing import Final, NamedTuple
 
 from bandwright import limits
 from bandwright.bandfile import blocks, grammar
@@ -79,7 +79,7 @@ def read(text: str, before: Document | None = None, fault: Fault | None = None) 
         index += 1
         own_text = body[piece.start : piece.end]
         if piece.kind == "top":
-            around.append(own_text)
+            around.append(layout[piece.start : piece.end])
             continue
         key = (piece.kind, own_text)
         block = cached.get(key) or parsed.get(key) or _read_block(*key)
@@ -116,8 +116,8 @@ def _joined(body: str, layout: str, pieces: list[blocks.Piece], index: int) -> t
         return None
     for last in range(index + 1, min(index + 1 + limits.MAX_PARSE_REPAIRS, len(pieces))):
         text = body[start : pieces[last].end]
-        tree = blocks.parse(text) if not blocks.opens_at_end(text) else None
-        if tree is not None and tree.whole and isinstance(tree.root, Mapping) and len(tree.root.entries) == 1:
+        tree = blocks.parse_whole(text)
+        if tree is not None and isinstance(tree.root, Mapping) and len(tree.root.entries) == 1:
             return last + 1, text
     return None
 
@@ -153,7 +153,9 @@ def _read_top(text: str, tree: Tree) -> Block:
         faults.append(Fault("syntax/not-yaml", Place((), span=line_end), (("found", kind),), "not-a-mapping"))
     elif not isinstance(tree.root, Lost):
         _top_keys(reader, Mapping([], Span(0, 0, 0, 0)))
-    return Block("top", "", text, 0, reader.marks, tuple(reader.own), (*faults, *reader.faults), tree.whole)
+    return Block(
+        "top", "", text, 0, reader.marks, tuple(reader.own.items()), (*faults, *reader.faults), tree.whole
+    )
 
 
 def _top_keys(reader: BlockReader, root: Mapping) -> None:
@@ -175,9 +177,9 @@ def _top_keys(reader: BlockReader, root: Mapping) -> None:
         reader.mark(
             path, entry.key.span, entry.value.span, union(entry.key.span, entry.value.span), root.flow, None
         )
-    for name, entry in seen.items():
+    for name in seen:
         if name not in known:
-            reader.unknown_key((), name, entry, known, seen)
+            reader.unknown_key((), name, known, seen, root.lossy)
     lossy = root.lossy or reader.is_lost(("format",))
     if "format" in seen:
         _format(reader, seen["format"])
@@ -212,7 +214,7 @@ def _format(reader: BlockReader, entry: Entry) -> None:
 def _read_whole(text: str, body: str, extra: tuple[Fault, ...]) -> Document:
     """A document that can't be cut: read in one, then divided into blocks all the same."""
     tree = blocks.parse(body, top=True)
-    lines = body.splitlines(keepends=True) if body.isascii() else re.split(r"(?<=\n)|(?<=\r)(?!\n)", body)
+    lines = _LINE_ENDS.split(body)
     starts: list[tuple[int, blocks.Kind, Entry]] = []
     if isinstance(tree.root, Mapping):
         for section in tree.root.entries:
@@ -221,21 +223,24 @@ def _read_whole(text: str, body: str, extra: tuple[Fault, ...]) -> Document:
                 kind = blocks.SECTIONS[key.text]
                 starts.extend((entry.key.span.line, kind, entry) for entry in value.entries)
     starts.sort(key=lambda start: start[0])
+    by_line: dict[int, list[Fault]] = {}
+    for fault in tree.faults:
+        by_line.setdefault(fault.place.span.line if fault.place.span else 0, []).append(fault)
     found: list[tuple[Block, bool]] = []
-    faults = list(tree.faults)
     for line, kind, entry in starts:
         end = max(line, entry.value.span.end_line) + 1
-        own_text = "".join(lines[line:end])
-        reader = BlockReader("device" if kind == "device" else "filter", own_text, line)
+        reader = BlockReader("device" if kind == "device" else "filter", "".join(lines[line:end]), line)
         name = reader.block(entry)
-        inside = [fault for fault in faults if fault.place.span and line <= fault.place.span.line < end]
-        faults = [fault for fault in faults if fault not in inside]
-        block = Block(
-            kind, name, own_text, 0, reader.marks, tuple(reader.own), (*inside, *reader.faults), not inside
-        )
+        inside = [fault for number in range(line, end) for fault in by_line.pop(number, ())]
+        faults = (*inside, *reader.faults)
+        block = Block(kind, name, reader.text, 0, reader.marks, tuple(reader.own.items()), faults, not inside)
         found.append((_moved(block, line), False))
-    top = _read_top(body, Tree(_hollow(tree.root), tuple(faults), not faults))
+    faults = tuple(fault for others in by_line.values() for fault in others)
+    top = _read_top(body, Tree(_hollow(tree.root), faults, not faults))
     return linked(text, with_faults(top, extra) if extra else top, found, {}, None)
+
+
+_LINE_ENDS: Final = re.compile(r"(?<=\n)|(?<=\r)(?!\n)")
 
 
 def _hollow(root: Node | None) -> Node | None:
@@ -289,7 +294,9 @@ def _read_block(kind: blocks.Kind, text: str) -> Block:
         name = reader.block(tree.root.entries[0])
     else:
         name, whole = _read_stray(reader, tree, text), False
-    return Block(kind, name, text, 0, reader.marks, tuple(reader.own), (*tree.faults, *reader.faults), whole)
+    return Block(
+        kind, name, text, 0, reader.marks, tuple(reader.own.items()), (*tree.faults, *reader.faults), whole
+    )
 
 
 def _read_stray(reader: BlockReader, tree: Tree, text: str) -> str:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Final
+
 from bandwright.bandfile import grammar, quantities
 from bandwright.bandfile.grammar import nearest
 from bandwright.bandfile.values import (
@@ -19,6 +21,9 @@ from bandwright.bandfile.values import (
     Setting,
     Span,
 )
+
+_NAMES_LISTED: Final = 12
+"""As many devices a message can name."""
 
 
 def linked(
@@ -110,9 +115,14 @@ def _unknown_device(asked: str, devices: dict[str, Block | None]) -> Fault:
             "key/unknown-device", place, (("written", asked),), "no-devices", (Mend(("device",), None),)
         )
     near = nearest(asked, devices)
-    facts = (("written", asked), *((("nearest", near),) if near else ()), ("names", ", ".join(devices)))
-    likely = (near,) if near else tuple(devices)
-    return Fault("key/unknown-device", place, facts, mends=tuple(Mend(("device",), name) for name in likely))
+    names = tuple(devices)[:_NAMES_LISTED]
+    facts = (("written", asked), *((("nearest", near),) if near else ()), ("names", ", ".join(names)))
+    return Fault(
+        "key/unknown-device",
+        place,
+        facts,
+        mends=tuple(Mend(("device",), name) for name in ((near,) if near else names)),
+    )
 
 
 def _resolve(block: Block, device: Block | None, device_unknown: bool) -> Resolved:

@@ -8,8 +8,8 @@ stood in them counts as incomplete.
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator
-from typing import Any, Final, NamedTuple, TypeVar
+from collections.abc import Iterable
+from typing import Final, TypeVar
 
 from ruamel.yaml.error import YAMLError
 
@@ -25,39 +25,56 @@ from bandwright.bandfile.nodes import (
     Sequence,
     TooDeepError,
     Tree,
-    after,
     too_deep,
 )
+from bandwright.bandfile.slips import HEAD, KEY_NAMES, SPACELESS, find_slip, value_start
 from bandwright.bandfile.values import Fault, Mend, Place, Span
 
-_HEAD: Final = re.compile(
-    r"( *)(- +|-$)?(?:(\"[^\"\n]*\"|'[^'\n]*'|[^\s\[\]{},#&*!|>@%`\"'][^\n]*?) *:(?=\s|$))?"
-)
-_TABBED: Final = re.compile(r"^[ \t]*\t[ \t]*(?=\S)", re.M)
+Refusal = TooDeepError | YAMLError
+"""What composing a text raises."""
+
+_OPENERS: Final = ("{", "[", '"', "'", "|", ">", "&", "*", "!")
+_WORD: Final = re.compile(r"[\w.-]+")
 _CLOSERS: Final = frozenset("]},")
 _MAX_SALVAGE_DEPTH: Final = 12
 """Deeper than the grammar nests, so that nothing of a filter is out of reach."""
 
 
-def salvaged(text: str, faults: tuple[Fault, ...], error: YAMLError, top: bool) -> Tree:
+def salvaged(text: str, faults: tuple[Fault, ...], error: Refusal, top: bool) -> Tree:
     """The tree of a text that the parser refuses with `error`, after the `faults` found before.
 
     `top`: the text is the top level of a file; else it starts with a name that the user chose.
     """
     salvage = _Salvage(text, list(faults), top)
-    if salvage.expand_tabs():
+    tabs, strays = salvage.expand_tabs(), salvage.take_in_strays()
+    root: Node | None = None
+    if tabs or strays:
         try:
             composer = Composer("\n".join(salvage.lines), 0, frozenset())
             root = composer.compose()
         except (TooDeepError, YAMLError):
-            root = salvage.group(0, len(salvage.lines), 0)
+            root = None
         else:
-            salvage.faults.extend(composer.faults)
-    else:
+            salvage.keep(composer.faults)
+    if root is None:
         root = salvage.group(0, len(salvage.lines), 0)
     if len(salvage.faults) == len(faults):
         salvage.blame(error)
+    if not top and isinstance(root, Mapping):
+        root = _with_one_name(root, salvage.incomplete)
     return Tree(salvage.moved_back(root), tuple(salvage.faults), False)
+
+
+def _with_one_name(root: Mapping, lossy: bool) -> Mapping:
+    """A block's tree with all that is in it below its name; `lossy`: some of it can't be read."""
+    if root.entries and (len(root.entries) > 1 or lossy):
+        name, body = root.entries[0]
+        if isinstance(body, Scalar) and not body.text:
+            body = Mapping([], body.span)
+        if isinstance(body, Mapping):
+            body = body._replace(entries=[*body.entries, *root.entries[1:]], lossy=lossy)
+        return root._replace(entries=[Entry(name, body)])
+    return root
 
 
 class _Salvage:
@@ -72,6 +89,7 @@ class _Salvage:
         self.orphans: list[Entry] = []
         """Keys of the filter that stand too deep, until the mapping is met that they belong in."""
         self.named = 0
+        self.incomplete = False
         heads = self.heads(1, len(self.lines)) if not top else []
         self.body = self.indent(heads[0]) if heads else 0
         """Where the keys of the block stand."""
@@ -89,10 +107,20 @@ class _Salvage:
             self.faults.append(Fault("syntax/not-yaml", Place((), span=span), facts, form, mends))
         self.named += 1
 
-    def blame(self, error: YAMLError) -> None:
-        """The parser refuses the whole though it takes every piece: point where it stopped."""
+    def keep(self, faults: Iterable[Fault]) -> None:
+        """Takes over what composing a part found."""
+        for fault in faults:
+            span = fault.place.span
+            place = fault.place if span is None else Place((), span=self.back(span))
+            self.faults.append(Fault(fault.id, place, fault.facts, fault.form))
+
+    def blame(self, error: Refusal, first: int = 0) -> None:
+        """Points where the parser stopped, in a text that starts at line `first`."""
+        if isinstance(error, TooDeepError):
+            self.keep([too_deep(error)])
+            return
         mark = getattr(error, "problem_mark", None)
-        line = min(mark.line, len(self.lines) - 1) if mark is not None else 0
+        line = first if mark is None else min(first + mark.line, len(self.lines) - 1)
         self.fault("other", self.content(line))
 
     def content(self, line: int) -> Span:
@@ -104,25 +132,21 @@ class _Salvage:
 
     def expand_tabs(self) -> bool:
         """Turns tabs that indent lines into as many spaces as other lines have, or two each; says so once."""
-        tabbed = [line for line, text in enumerate(self.lines) if _TABBED.match(text)]
+        blanks = [text[: len(text) - len(text.lstrip(" \t"))] for text in self.lines]
+        tabbed = [line for line, blank in enumerate(blanks) if "\t" in blank and self.words(line)]
         if not tabbed:
             return False
-        indents = {
-            self.indent(line) for line, text in enumerate(self.lines) if line and line not in tabbed and text
-        }
+        others = set(range(1, len(blanks))).difference(tabbed)
+        indents = {len(blanks[line]) for line in others if self.words(line)}
         for line in tabbed:
-            text = self.lines[line]
-            blank = len(text) - len(text.lstrip(" \t"))
-            widths = [len(text[:blank].replace("\t", " " * step)) for step in (2, 4, 8)]
+            widths = [len(blanks[line].replace("\t", " " * step)) for step in (2, 4, 8)]
             width = next((width for width in widths if width in indents), widths[0])
-            self.lines[line] = " " * width + text[blank:]
-            self.shifts[line] = width - blank
+            self.lines[line] = " " * width + self.lines[line][len(blanks[line]) :]
+            self.shifts[line] = width - len(blanks[line])
         first, last = tabbed[0], tabbed[-1]
-        start = self.original[first].index("\t")
-        end = len(self.original[last]) - len(self.original[last].lstrip(" \t"))
+        start, stop, end = blanks[first].index("\t"), len(blanks[first]), len(blanks[last])
         stretch = Span(first, 0, last, end)
         spaces = "\n".join((*self.lines[first:last], self.lines[last][: end + self.shifts[last]]))
-        stop = len(self.original[first]) - len(self.original[first].lstrip(" \t"))
         self.faults.append(
             Fault(
                 "syntax/tab",
@@ -133,31 +157,50 @@ class _Salvage:
         )
         return True
 
+    def take_in_strays(self) -> bool:
+        """Moves keys that stand no deeper than the block's name to where they belong, blanks other lines.
+
+        Says whether there were any; a blanked one leaves the block incomplete.
+        """
+        if self.top:
+            return False
+        strays = [line for line in self.heads(0, len(self.lines))[1:] if self.indent(line) <= self.indent(0)]
+        for line in strays:
+            match = HEAD.match(self.lines[line])
+            if match and (match[2] or match[3]):
+                self.misplaced(line, self.body)
+            else:
+                self.fault("no-colon", self.content(line), ("written", self.words(line)))
+            if match and match[3] in INSIDE["filter"][()] and not match[2]:
+                self.shifts[line] = self.shifts.get(line, 0) + self.body - self.indent(line)
+                self.lines[line] = " " * self.body + self.words(line)
+            else:
+                self.lines[line] = ""
+                self.incomplete = True
+        return bool(strays)
+
     def back(self, span: Span) -> Span:
-        """The span in the text as written, before tabs became spaces."""
-        if not self.shifts:
-            return span
+        """The span in the text as written: before tabs became spaces, and without what closes brackets."""
         line, column, end_line, end_column = span
-        return Span(
-            line,
-            max(0, column - self.shifts.get(line, 0)),
-            end_line,
-            max(0, end_column - self.shifts.get(end_line, 0)),
-        )
+        return Span(line, self.column_back(line, column), end_line, self.column_back(end_line, end_column))
+
+    def column_back(self, line: int, column: int) -> int:
+        return min(max(0, column - self.shifts.get(line, 0)), len(self.original[line]))
 
     def moved_back(self, node: Node | None) -> Node | None:
-        if node is None or not self.shifts:
-            return node
+        """The tree with its spans in the text as written."""
+        if node is None:
+            return None
+        span = self.back(node.span)
         if isinstance(node, Mapping):
             entries = [
                 Entry(self.moved_back(e.key) or e.key, self.moved_back(e.value) or e.value)
                 for e in node.entries
             ]
-            return node._replace(entries=entries, span=self.back(node.span))
+            return node._replace(entries=entries, span=span)
         if isinstance(node, Sequence):
-            items = [self.moved_back(item) or item for item in node.items]
-            return node._replace(items=items, span=self.back(node.span))
-        return node._replace(span=self.back(node.span))
+            return node._replace(items=[self.moved_back(item) or item for item in node.items], span=span)
+        return node._replace(span=span)
 
     # ------------------------------------------------------------------------------------------- groups
 
@@ -169,36 +212,43 @@ class _Salvage:
         usual = self.indent(heads[0])
         start = Span(heads[0], usual, heads[0], usual)
         mapping = Mapping([], start)
+        lossy = False
         items: list[Node] = []
         for head, stop in zip(heads, [*heads[1:], end], strict=True):
             node = self.segment(head, stop, depth)
             if isinstance(node, Sequence):
                 if not items and self.goes_to_last(mapping, node, head):
                     continue
+                if mapping.entries and not self.words(head).startswith("-"):
+                    self.fault("other", self.content(head))
+                    lossy = True
+                    continue
                 for entry in mapping.entries:
-                    self.fault(
-                        "no-dash",
-                        self.content(entry.key.span.line),
-                        ("written", self.words(entry.key.span.line)),
-                    )
+                    self.dash_missing(entry.key.span.line)
                     items.append(Mapping([entry], entry.key.span))
                 mapping.entries.clear()
-                if self.indent(head) != usual:
-                    self.misplaced(head, usual)
                 items.extend(node.items)
-            elif isinstance(node, Mapping) and not items:
-                if self.indent(head) != usual:
-                    self.misplaced(head, usual)
-                mapping.entries.extend(node.entries)
-            elif isinstance(node, Mapping):
+            elif isinstance(node, Mapping) and items:
                 name = node.entries[0].key if node.entries else None
                 if isinstance(name, Scalar) and name.text in INSIDE["filter"][()]:
                     self.misplaced(head, self.body)
                     self.orphans.extend(node.entries)
                 else:
-                    self.fault("no-dash", self.content(head), ("written", self.words(head)))
+                    self.dash_missing(head)
                     items.append(node)
-        return _stretched(Sequence(items, start)) if items else _stretched(mapping)
+                continue
+            elif isinstance(node, Mapping):
+                mapping.entries.extend(node.entries)
+                lossy = lossy or node.lossy
+            if self.indent(head) != usual:
+                self.misplaced(head, usual)
+        if items:
+            return _stretched(Sequence(items, start))
+        entries = [Entry(key, _stretched(v) if isinstance(v, Sequence) else v) for key, v in mapping.entries]
+        return _stretched(Mapping(entries, start, lossy=lossy))
+
+    def dash_missing(self, line: int) -> None:
+        self.fault("no-dash", self.content(line), ("written", self.words(line)))
 
     def goes_to_last(self, mapping: Mapping, node: Sequence, head: int) -> bool:
         """Whether items stand no deeper than the key before them, whose list they then are."""
@@ -209,7 +259,6 @@ class _Salvage:
             if value.span.column != self.indent(head):
                 self.misplaced(head, value.span.column)
             value.items.extend(node.items)
-            mapping.entries[-1] = Entry(key, _stretched(value))
             return True
         if isinstance(value, Scalar) and not value.text:
             mapping.entries[-1] = Entry(key, node)
@@ -243,24 +292,21 @@ class _Salvage:
         try:
             composer = Composer("\n".join(self.lines[head:stop]), head, frozenset())
             node = composer.compose()
-        except TooDeepError as deep:
-            self.faults.append(too_deep(deep))
-            return self.lost(head, deep.span)
-        except YAMLError as error:
+        except (TooDeepError, YAMLError) as error:
             return self.broken_segment(head, stop, depth, error)
-        self.faults.extend(composer.faults)
+        self.keep(composer.faults)
         if isinstance(node, Scalar):
             return self.stray(head, stop, depth)
         return node
 
-    def broken_segment(self, head: int, stop: int, depth: int, error: YAMLError) -> Node | None:
-        match = _HEAD.match(self.lines[head])
+    def broken_segment(self, head: int, stop: int, depth: int, error: Refusal) -> Node | None:
+        match = HEAD.match(self.lines[head])
         assert match is not None  # every part of the pattern is optional
         rest = self.lines[head][match.end() :].strip()
         inline = bool(rest) and not rest.startswith("#")
-        deeper = any(self.lines[line].strip() for line in range(head + 1, stop))
+        deeper = bool(self.heads(head + 1, stop))
         if depth >= _MAX_SALVAGE_DEPTH:
-            self.blame_line(head, error)
+            self.blame(error, head)
             return self.lost(head)
         if match[2] and (match[3] or inline):
             return self.item(head, stop, depth, match)
@@ -272,7 +318,7 @@ class _Salvage:
         if not inline and deeper:
             key = self.key(head, match)
             inner = self.group(head + 1, stop, depth + 1)
-            return self.with_orphans(key, inner or Lost(after(key.span)), self.content(head))
+            return self.with_orphans(key, inner or Lost(_behind(key.span)), self.content(head))
         return self.leaf(head, stop, depth)
 
     def item(self, head: int, stop: int, depth: int, match: re.Match[str]) -> Node:
@@ -302,7 +348,7 @@ class _Salvage:
 
     def lost(self, head: int, span: Span | None = None) -> Node:
         """The segment with its key, if it has one, and a value that can't be read."""
-        match = _HEAD.match(self.lines[head])
+        match = HEAD.match(self.lines[head])
         assert match is not None  # every part of the pattern is optional
         value = span or Span(
             head, min(match.end() + 1, len(self.lines[head])), head, len(self.lines[head].rstrip())
@@ -317,17 +363,20 @@ class _Salvage:
         """A line that is neither a key nor an item: a key without its colon, most likely."""
         span = self.content(head)
         word = self.words(head)
-        spaceless = _SPACELESS.match(word)
+        spaceless = SPACELESS.match(word)
         if spaceless:
             mend = Mend((), f"{spaceless[1]}: {spaceless[2]}", span=span)
             self.fault("no-space", span, ("key", spaceless[1]), ("written", word), mends=(mend,))
             word = spaceless[1]
         else:
-            near = nearest(word, _KEY_NAMES) if self.top or depth else None
+            near = nearest(word, KEY_NAMES) if self.top or depth else None
             facts = (("written", word), ("nearest", near)) if near else (("written", word),)
             self.fault("no-colon", span, *facts)
-        key = Scalar(word.split(" ")[0], Span(head, span.column, head, span.column + len(word.split(" ")[0])))
-        inner: Node | None = None
+        if not spaceless and _WORD.fullmatch(word) is None:
+            inner = self.group(head + 1, stop, depth + 1) if depth < _MAX_SALVAGE_DEPTH else None
+            return Mapping(inner.entries if isinstance(inner, Mapping) else [], span, lossy=True)
+        key = Scalar(word, Span(head, span.column, head, span.column + len(word)))
+        inner = None
         if not spaceless and depth < _MAX_SALVAGE_DEPTH:
             inner = self.group(head + 1, stop, depth + 1)
         return self.with_orphans(key, inner or Lost(span), span)
@@ -341,18 +390,20 @@ class _Salvage:
 
     def leaf(self, head: int, stop: int, depth: int) -> Node | None:
         """A value that stands beside its key or dash: closed or blanked where it breaks."""
+        if entries := self.with_neighbours_below(head, stop, depth):
+            return entries
         lines = self.lines[head:stop]
-        start = _value_start(lines[0])
+        start = value_start(lines[0])
         lossy: set[tuple[int, int]] = set()
         for attempt in range(limits.MAX_PARSE_REPAIRS + 1):
             try:
                 composer = Composer("\n".join(lines), head, frozenset(lossy))
                 node = composer.compose()
             except TooDeepError as deep:
-                self.faults.append(too_deep(deep))
+                self.blame(deep)
                 return self.lost(head, deep.span)
             except YAMLError as error:
-                slip = _slip(lines, start, error)
+                slip = find_slip(lines, start, error)
                 if not attempt:
                     span = Span(head + slip.line, slip.start, head + slip.line, slip.end)
                     mends = () if slip.mended is None else (Mend((), slip.mended, span=span),)
@@ -363,216 +414,34 @@ class _Salvage:
                 lossy.update((head + slip.line, column) for column in slip.lossy)
             else:
                 return node
-        if (
-            any(self.lines[line].strip() for line in range(head + 1, stop))
-            and lines[0][start : start + 1] not in _OPENERS
-        ):
-            alone = self.segment(head, head + 1, depth)
-            if isinstance(alone, Mapping) and not isinstance(alone.entries[-1].value, Lost):
-                return self.with_misplaced(alone, head, stop, depth)
         return self.lost(head)
 
-    def with_misplaced(self, alone: Mapping, head: int, stop: int, depth: int) -> Mapping:
-        """Lines that stand deeper than the complete entry before them: its neighbours, most likely."""
-        below = self.group(head + 1, stop, depth + 1) if depth < _MAX_SALVAGE_DEPTH else None
-        entries = list(alone.entries)
-        if isinstance(below, Mapping):
-            self.misplaced(below.span.line, self.indent(head))
-            entries.extend(below.entries)
-        return _stretched(Mapping(entries, alone.span))
-
-    def blame_line(self, head: int, error: YAMLError) -> None:
-        mark = getattr(error, "problem_mark", None)
-        self.fault(
-            "other", self.content(head if mark is None else min(head + mark.line, len(self.lines) - 1))
-        )
-
-
-class _Slip(NamedTuple):
-    """Where and why a leaf does not parse, and its line with the slip out of the way."""
-
-    form: str
-    line: int
-    start: int
-    end: int
-    facts: tuple[tuple[str, str], ...] = ()
-    mended: str | None = None
-    """What to write from `start` to `end` instead."""
-    repaired: str | None = None
-    lossy: tuple[int, ...] = ()
-    """In which columns of the repaired line scalars or collections start that are not all there."""
+    def with_neighbours_below(self, head: int, stop: int, depth: int) -> Mapping | None:
+        """An entry that is complete on its line with keys below that stand too deep; None if it is not so."""
+        line = self.lines[head]
+        below = next(iter(self.heads(head + 1, stop)), None)
+        key = HEAD.match(self.lines[below]) if below is not None else None
+        if below is None or key is None or not (key[2] or key[3] in KEY_NAMES):
+            return None
+        if line.startswith(_OPENERS, value_start(line)) or depth >= _MAX_SALVAGE_DEPTH:
+            return None
+        try:
+            alone = Composer(line, head, frozenset()).compose()
+        except (TooDeepError, YAMLError):
+            return None
+        if not isinstance(alone, Mapping):
+            return None
+        others = self.group(below, stop, depth + 1)
+        if isinstance(others, Mapping):
+            self.misplaced(below, self.indent(head))
+            return _stretched(Mapping([*alone.entries, *others.entries], alone.span))
+        self.fault("other", self.content(below))
+        return alone._replace(lossy=True)
 
 
-_OPENERS: Final = ("{", "[", '"', "'", "|", ">", "&", "*", "!")
-_CLOSING: Final = {"{": "}", "[": "]"}
-_SPACELESS: Final = re.compile(r"([A-Za-z_][\w-]*):(\S.*)")
-_KEY_NAMES: Final = frozenset(
-    name for tables in INSIDE.values() for inside in tables.values() for name in inside if name != "*"
-)
-
-
-def _value_start(line: str) -> int:
-    """Where the text starts that stands behind the key or dash of a line."""
-    match = _HEAD.match(line)
-    end = match.end() if match else 0
-    return end + len(line[end:]) - len(line[end:].lstrip())
-
-
-def _slip(lines: list[str], start: int, error: YAMLError) -> _Slip:
-    """What the parser's refusal of a leaf, whose value starts in column `start`, comes from."""
-    context, problem = str(getattr(error, "context", "") or ""), str(getattr(error, "problem", "") or "")
-    line, column = _position(lines, getattr(error, "problem_mark", None))
-    if "quoted scalar" in context and "end of stream" in problem:
-        line, column = _position(lines, getattr(error, "context_mark", None))
-        text = lines[line].rstrip()
-        quote = text[column]
-        return _Slip(
-            "unclosed-quote", line, column, len(text), (("quote", quote),), None, text + quote, (column,)
-        )
-    in_flow = lines[0][start : start + 1] in ("{", "[")
-    if in_flow and (unbalanced := _unbalanced(lines, start)):
-        return unbalanced
-    extent = _entry_extent(lines[line], column, start if line == 0 else 0) if in_flow else None
-    entry, value, end = extent or (0, start if line == 0 else 0, _content_end(lines[line]))
-    text = lines[line]
-    value += len(text[value:end]) - len(text[value:end].lstrip())
-    written = text[value:end].rstrip()
-    end = value + len(written)
-    repaired = text[:value] + "x" * (end - value) + text[end:] if extent and written else None
-    key = _key_facts(text[entry:value])
-    facts: tuple[tuple[str, str], ...]
-    if (spaceless := _SPACELESS.match(written)) and not key and spaceless[1] in _KEY_NAMES:
-        facts = (("key", spaceless[1]), ("written", written))
-        mended = f"{spaceless[1]}: {spaceless[2]}"
-        lossy = value + len(spaceless[1]) + 2
-        repaired = text[: lossy - 2] + ": " + "x" * (end - lossy) + text[end:]
-        return _Slip("no-space", line, value, end, facts, mended, repaired if extent else None, (lossy,))
-    quoted = "'" + written.replace("'", "''") + "'"
-    if written and (
-        "start any token" in problem
-        or any(word in context for word in ("anchor", "alias", "block scalar", "tag"))
-    ):
-        facts = (("character", text[value]), *key)
-        return _Slip("character", line, value, end, facts, quoted, repaired, (value,))
-    if written and ("mapping values" in problem or "unexpected ':'" in problem or "expected ','" in problem):
-        facts = (*key, ("written", written))
-        if extent and (missing := re.search(r" +([A-Za-z_]+): ", written)) and missing[1] in _KEY_NAMES:
-            mended = written[: missing.start()] + ", " + written[missing.start() :].lstrip()
-            return _Slip(
-                "missing-comma",
-                line,
-                value,
-                end,
-                facts,
-                mended,
-                repaired,
-                (value, *_bracket_before(text, value)),
-            )
-        return _Slip("colon-in-value", line, value, end, facts, quoted, repaired, (value,))
-    return _Slip("other", line, value, end, key, None, repaired, (value,))
-
-
-def _position(lines: list[str], mark: Any) -> tuple[int, int]:
-    """A mark of the parser, kept inside the lines."""
-    if mark is None:
-        return 0, 0
-    if mark.line >= len(lines):
-        return len(lines) - 1, len(lines[-1])
-    return mark.line, mark.column
-
-
-def _key_facts(text: str) -> tuple[tuple[str, str], ...]:
-    match = re.match(r"[\s-]*[\"']?([^\s:\"']+)[\"']?\s*:", text)
-    return (("key", match[1]),) if match else ()
-
-
-def _content_end(line: str) -> int:
-    """Where a line ends without its comment."""
-    comment = re.search(r"\s#", line)
-    return len(line[: comment.start()].rstrip() if comment else line.rstrip())
-
-
-def _flow_marks(line: str, start: int) -> Iterator[tuple[int, str]]:
-    """Brackets and commas of a line that stand outside quotes and comments, with their columns."""
-    quote = ""
-    before = " "
-    for column in range(start, len(line)):
-        letter = line[column]
-        if quote:
-            if letter == quote and not (quote == '"' and before == "\\"):
-                quote = ""
-        elif letter in "\"'" and before in " [{,":
-            quote = letter
-        elif letter == "#" and before == " ":
-            return
-        elif letter in "[]{},":
-            yield column, letter
-        before = letter
-
-
-def _unbalanced(lines: list[str], start: int) -> _Slip | None:
-    """The first bracket that is closed by another kind, or never opened, or else the last one left open."""
-    opened: list[tuple[int, int]] = []
-    for line, text in enumerate(lines):
-        for column, letter in _flow_marks(text, start if line == 0 else 0):
-            if letter in "[{":
-                opened.append((line, column))
-            elif letter != ",":
-                if not opened:
-                    repaired = text[:column] + " " + text[column + 1 :]
-                    return _Slip(
-                        "unopened-bracket",
-                        line,
-                        column,
-                        column + 1,
-                        (("bracket", letter),),
-                        "",
-                        repaired,
-                    )
-                at, place = opened.pop()
-                bracket = lines[at][place]
-                if _CLOSING[bracket] != letter:
-                    facts = (("bracket", bracket), ("closing", _CLOSING[bracket]))
-                    repaired = text[:column] + _CLOSING[bracket] + text[column + 1 :]
-                    return _Slip(
-                        "unclosed-bracket", line, column, column + 1, facts, _CLOSING[bracket], repaired
-                    )
-    if not opened:
-        return None
-    line, column = opened[-1]
-    text = lines[line][: _content_end(lines[line])]
-    comma = "," if text.endswith(",") and len(opened) > 1 else ""
-    bracket = text[column]
-    facts = (("bracket", bracket), ("closing", _CLOSING[bracket]))
-    repaired = text.rstrip(",") + _CLOSING[bracket] + comma
-    return _Slip("unclosed-bracket", line, column, len(text), facts, None, repaired, (column,))
-
-
-def _bracket_before(line: str, column: int) -> tuple[int, ...]:
-    """The column of the innermost bracket that is open at `column`, if it is on this line."""
-    opened: list[int] = []
-    for at, letter in _flow_marks(line[:column], 0):
-        if letter in "[{":
-            opened.append(at)
-        elif letter != "," and opened:
-            opened.pop()
-    return tuple(opened[-1:])
-
-
-def _entry_extent(line: str, column: int, from_column: int) -> tuple[int, int, int] | None:
-    """Of the flow entry around `column`: where it starts, where its value starts, and where it ends."""
-    start = from_column
-    end = _content_end(line)
-    for at, _ in _flow_marks(line, from_column):
-        if at < column:
-            start = at + 1
-        else:
-            end = at
-            break
-    if start > end:
-        return None
-    key = re.match(r"\s*(?:\"[^\"]*\"|'[^']*'|[^\s\"'][^:]*?)\s*:\s+", line[start:end])
-    return start, start + key.end() if key else start, end
+def _behind(key: Span) -> Span:
+    """The empty span behind a key's colon."""
+    return Span(key.end_line, key.end_column + 1, key.end_line, key.end_column + 1)
 
 
 _Collection = TypeVar("_Collection", Mapping, Sequence)

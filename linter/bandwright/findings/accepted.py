@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from bandwright.findings.rules import reported
+from bandwright.remedies import accepting
 
 no_reason = reported(
     "accepted/no-reason",
@@ -28,6 +29,7 @@ unknown_finding = reported(
             "No finding is named `{finding}`, so there is nothing to accept; remove this entry.",
         )
     },
+    remedies=(accepting.drop_entry,),
 )
 
 not_acceptable = reported(
@@ -35,6 +37,7 @@ not_acceptable = reported(
     "warning",
     "`{finding}` can't be accepted, because the filter can't be judged until it is put right; remove this"
     " entry.",
+    remedies=(accepting.remove_entry,),
 )
 
 expired = reported(
@@ -42,6 +45,7 @@ expired = reported(
     "warning",
     "The entry for `{finding}` ended with {until}, so it accepts nothing any more; look at it again or"
     " remove it.",
+    remedies=(accepting.drop_entry,),
 )
 
 nothing_to_accept = reported(
@@ -49,6 +53,7 @@ nothing_to_accept = reported(
     "warning",
     "This filter has no finding `{finding}` any more, so there is nothing to accept here; remove this entry.",
     tag="unnecessary",
+    remedies=(accepting.remove_entry,),
 )
 
 no_limit = reported(

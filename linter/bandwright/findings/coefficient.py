@@ -6,7 +6,7 @@ import math
 from collections.abc import Iterator
 from typing import NamedTuple
 
-from bandwright.bandfile.quantities import Arithmetic, show_number
+from bandwright.bandfile.quantities import Arithmetic, show, show_number
 from bandwright.bandfile.values import Filter, Place
 from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.rules import Hit, finding
@@ -14,12 +14,16 @@ from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.structures import STRUCTURES
 from bandwright.remedies import families, structures, words
+from bandwright.theory.closed_form.bits import NumberFormat, zero_scatter
 
 DOUBLE_BITS = 53
 """Significant bits of IEEE 754 binary64, the longest format that processors add and multiply in."""
 
 FEW_BITS = 8
 """An expanded polynomial with fewer bits to spare is worth a word: a stricter mask soon takes them."""
+
+WIDE = 1e4
+"""Coefficients that differ by more decades than this are hard to look through, and to scale."""
 
 CROWDED = 0.35
 """Poles within this angle (rad) of z = 1 or z = -1 are said to crowd there."""
@@ -46,11 +50,14 @@ class Stored(NamedTuple):
         return STRUCTURES[self.structure].stores == "expanded"
 
     @property
+    def number_format(self) -> NumberFormat:
+        """Floating where no arithmetic is named."""
+        return self.arithmetic.number_format if self.arithmetic is not None else "floating"
+
+    @property
     def double(self) -> bool:
         """Whether no longer floating format is left."""
-        return self.arithmetic is None or (
-            self.arithmetic.number_format == "floating" and self.has >= DOUBLE_BITS
-        )
+        return self.number_format == "floating" and self.has >= DOUBLE_BITS
 
 
 def _stored(case: Case) -> Stored | None:
@@ -76,10 +83,15 @@ def _stored(case: Case) -> Stored | None:
         " `{arithmetic}` has {has}, because {why}; take a longer word.",
         "taps": "{taps} taps need {needed}-bit coefficients or longer and `{arithmetic}` has {has}, because"
         " {why}; take a longer word.",
-        "none": "No coefficient word of {limit} bits or less carries order {order} in `{structure}`,"
-        " because {why}; `{arithmetic}` has {has}.",
+        "none": "Order {order} in this structure needs {needed} bits or more and `{arithmetic}` has {has},"
+        " because {why}; take another structure, or relax the mask.",
     },
-    remedies=(structures.second_order_sections, families.least_order_family, words.longer_word),
+    remedies=(
+        structures.second_order_sections,
+        words.sections_in_longer_word,
+        words.longer_word,
+        families.least_order_family,
+    ),
     needs=CHOICE,
 )
 def too_few_bits(case: Case) -> Iterator[Hit]:
@@ -104,7 +116,7 @@ def too_few_bits(case: Case) -> Iterator[Hit]:
         taps = case.exact(stored.one.taps)
         form, facts = "taps", (*facts, ("taps", f"{stored.one.taps.value if taps is None else taps:g}"))
     elif needed is None:
-        form, facts = "none", (*facts, ("limit", f"{bits.low:g}"))
+        form = "none"
     elif stored.expanded:
         form, facts = "", (*facts, ("sections", _bits_in_sections(case, stored)))
     else:
@@ -121,8 +133,8 @@ def too_few_bits(case: Case) -> Iterator[Hit]:
     {
         "": "One direct form of order {order} needs {needed} bits and double precision has {has}:"
         " denominator up to {largest}, numerator down to {smallest}; sections need {sections}.",
-        "none": "No word of {limit} bits or less carries one direct form of order {order}, whose"
-        " denominator reaches {largest}; store it as second-order sections.",
+        "none": "One direct form of order {order} needs {needed} or more bits and double precision has {has}:"
+        " denominator up to {largest}, numerator down to {smallest}; store sections.",
     },
     remedies=(structures.second_order_sections, families.least_order_family, families.fewest_bits_family),
     needs=CHOICE,
@@ -139,14 +151,13 @@ def double_precision_not_enough(case: Case) -> Iterator[Hit]:
     facts: tuple[tuple[str, object], ...] = (
         ("order", stored.one.order),
         ("has", stored.has),
+        ("needed", f"{bits.low if needed is None else needed:g}"),
         ("largest", _power(max(map(abs, both[1])))),
         ("smallest", _power(min(abs(b) for b in both[0] if b))),
     )
-    if needed is None:
-        form, facts = "none", (*facts, ("limit", f"{bits.low:g}"))
-    else:
-        form = ""
-        facts = (*facts, ("needed", f"{needed:g}"), ("sections", _bits_in_sections(case, stored)))
+    form = "none"
+    if needed is not None:
+        form, facts = "", (*facts, ("sections", _bits_in_sections(case, stored)))
     figure = (bits.low if needed is None else needed, "")
     yield Hit(
         "coefficient/double-precision-not-enough",
@@ -168,93 +179,88 @@ def double_precision_not_enough(case: Case) -> Iterator[Hit]:
 )
 def barely_enough(case: Case) -> Iterator[Hit]:
     """An expanded polynomial that leaves few bits to spare."""
+    yield from _carried(case, "coefficient/barely-enough", barely=True)
+
+
+@finding(
+    "coefficient/wide-spread",
+    "information",
+    "The denominator of one direct form of order {order} runs from {largest} down to {smallest} and takes"
+    " {needed} of {has} bits; second-order sections take {sections}.",
+    remedies=(structures.second_order_sections,),
+    needs=CHOICE,
+)
+def wide_spread(case: Case) -> Iterator[Hit]:
+    """An expanded polynomial whose coefficients differ by decades, though the word carries them well."""
+    yield from _carried(case, "coefficient/wide-spread", barely=False)
+
+
+def _carried(case: Case, id: str, *, barely: bool) -> Iterator[Hit]:
+    """What an expanded polynomial takes of a word that carries it: nearly all of it, or less."""
     stored = _stored(case)
     if stored is None or not stored.expanded:
         return
     bits, both = case.forecast.own_bits(stored.one), case.forecast.expanded(stored.one)
-    if bits is None or both is None or bits.high <= stored.has - FEW_BITS or bits.low > stored.has:
-        return
-    needed = case.exact(bits)
-    if needed is None or not stored.has - FEW_BITS < needed <= stored.has:
+    if bits is None or both is None or case.exceeds(bits, stored.has):
         return
     sizes = [abs(a) for a in both[1] if a]
+    if case.exceeds(bits, stored.has - FEW_BITS) is not barely:
+        return
+    needed = case.exact(bits) if barely or max(sizes) >= WIDE * min(sizes) else None
+    if needed is None:
+        return
     facts = (
         ("order", stored.one.order),
         ("needed", f"{needed:g}"),
         ("has", stored.has),
-        ("largest", show_number(max(sizes), 2)),
-        ("smallest", show_number(min(sizes), 2)),
+        ("largest", show_number(max(sizes), 3)),
+        ("smallest", show_number(min(sizes), 3)),
         ("sections", _bits_in_sections(case, stored)),
     )
-    yield Hit("coefficient/barely-enough", _place(case.filter, stored), facts, "", _word(case.filter))
+    yield Hit(id, _place(case.filter, stored), facts, "", _word(case.filter))
 
 
 @finding(
     "coefficient/zeros-scatter",
     "information",
-    "Rounded to {bits} bits, the {count} zeros of the expanded numerator at z = {place} scatter by about"
+    "Rounded to {bits} bits, the {count} zeros of the expanded numerator at {place} scatter by about"
     " {distance}; second-order sections keep each pair there.",
     remedies=(structures.second_order_sections,),
     needs=CHOICE,
 )
 def zeros_scatter(case: Case) -> Iterator[Hit]:
-    """A multiple zero of an expanded numerator that rounding scatters."""
+    """A multiple zero of an expanded numerator that rounding scatters, where the poles still hold."""
     stored = _stored(case)
-    if stored is None or not stored.expanded:
+    design = case.forecast.design(stored.one) if stored is not None else None
+    if stored is None or design is None or not stored.expanded:
         return
     bits = case.forecast.own_bits(stored.one)
-    if bits is None or case.exceeds(bits, stored.has):
-        return  # then the poles move first
-    found = _scatter(case.forecast, stored)
-    if found is None:
+    scatter = zero_scatter(design, stored.has, stored.number_format)
+    if bits is None or scatter is None or case.exceeds(bits, stored.has):
         return
-    count, place, distance = found
-    if count >= MULTIPLE and distance >= SCATTER:
+    if scatter.multiplicity >= MULTIPLE and scatter.distance >= SCATTER:
         facts = (
             ("bits", stored.has),
-            ("count", count),
-            ("place", place),
-            ("distance", show_number(distance, 1)),
+            ("count", scatter.multiplicity),
+            ("place", _on_circle(case.forecast, scatter.angle)),
+            ("distance", show_number(scatter.distance, 1)),
         )
         yield Hit("coefficient/zeros-scatter", _place(case.filter, stored), facts)
 
 
-def _scatter(forecast: Forecast, stored: Stored) -> tuple[int, int, float] | None:
-    """How many zeros lie at z = 1 or z = -1, where, and how far rounding the expanded numerator moves them.
-
-    With B(x) = c (x - x0)^n R(x), x = 1/z, an error E(x) of the coefficients moves the n-fold zero x0 by
-    |E(x0) / (c R(x0))|^(1/n) (Wilkinson, "Rounding Errors in Algebraic Processes", 1963, from memory). The
-    errors are uniform over one step, so that E(x0) has the variance of their sum.
-    """
-    design, both = forecast.design(stored.one), forecast.expanded(stored.one)
-    if design is None or both is None:
-        return None
-    there = {
-        place: sum(2 if zero.pair else 1 for zero in design.zeros if zero.gap == 0.0 and zero.angle == angle)
-        for place, angle in ((-1, math.pi), (1, 0.0))
-    }
-    place = max(there, key=lambda place: there[place])
-    count = there[place]
-    if count == 0:
-        return None
-    numerator = both[0]
-    fixed = stored.arithmetic is not None and stored.arithmetic.number_format == "fixed"
-    shared = math.frexp(max(map(abs, numerator)))[1]
-    steps = [
-        math.ldexp(1.0, (shared if fixed else math.frexp(b)[1]) - stored.has + fixed) for b in numerator if b
-    ]
-    error = math.sqrt(sum(step * step for step in steps) / 12.0)
-    # c R(x0) is the count-th derivative of B at x0, over count!.
-    slope = abs(
-        sum(b * math.comb(k, count) * place ** (k - count) for k, b in enumerate(numerator) if k >= count)
+def _on_circle(forecast: Forecast, angle: float) -> str:
+    """A place on the unit circle in words."""
+    if angle in (0.0, math.pi):
+        return f"z = {1 if angle == 0.0 else -1}"
+    rate_hz = forecast.sample_rate_hz
+    return (
+        show(angle / math.tau * rate_hz, "frequency") if rate_hz else show(angle / math.pi, "frequency", "pi")
     )
-    return count, place, (error / slope) ** (1.0 / count)
 
 
 def _bits_in_sections(case: Case, stored: Stored) -> str:
     """The bits that second-order sections need, exactly."""
-    number_format = stored.arithmetic.number_format if stored.arithmetic is not None else "floating"
-    bits = case.forecast.bits(stored.one, "cascade", number_format)
+    bits = case.forecast.bits(stored.one, "cascade", stored.number_format)
     exact = case.exact(bits) if bits is not None else None
     return f"{exact:g}" if exact is not None else "fewer"
 

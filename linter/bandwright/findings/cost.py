@@ -6,10 +6,11 @@ from collections.abc import Iterator
 
 from bandwright.bandfile.grammar import IIR_FAMILIES
 from bandwright.bandfile.values import Place
-from bandwright.findings import gaps, maxima
+from bandwright.findings import maxima
 from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.rules import Hit, finding
-from bandwright.findings.words import opening, title
+from bandwright.findings.words import a_filter, opening, title
+from bandwright.forecast import gaps
 from bandwright.remedies import families, relaxations
 
 
@@ -43,10 +44,10 @@ def linear_phase_with_iir_family(case: Case) -> Iterator[Hit]:
         " {low} to {high}; widen it, or allow more.",
         "one": "{family} delays the pass band by {delay}, maximum {maximum}, because the transition is only"
         " {low} to {high}; widen it, or allow more.",
-        "other": "{family} delays the pass band by {delay}, maximum {maximum}, because the transition is"
-        " only {low} to {high}; {other} delays it by {less}.",
+        "other": "{family} delays the pass band by {delay}, maximum {maximum}, because the transition is only"
+        " {low} to {high}; {other} by {less}.",
     },
-    remedies=(families.shortest_delay_family, relaxations.raise_delay),
+    remedies=(families.shortest_delay_family, relaxations.within_maximum_delay, relaxations.raise_delay),
     needs=CHOICE,
 )
 def delay_over_maximum(case: Case) -> Iterator[Hit]:
@@ -65,7 +66,11 @@ def delay_over_maximum(case: Case) -> Iterator[Hit]:
         "other": "{family} takes {multiplications} multiplications per sample, maximum {maximum}; {other}"
         " takes {less}.",
     },
-    remedies=(families.fewest_multiplications_family, relaxations.raise_multiplications),
+    remedies=(
+        families.fewest_multiplications_family,
+        relaxations.within_maximum_multiplications,
+        relaxations.raise_multiplications,
+    ),
     needs=CHOICE,
 )
 def multiplications_over_maximum(case: Case) -> Iterator[Hit]:
@@ -94,36 +99,38 @@ def memory_over_maximum(case: Case) -> Iterator[Hit]:
 def _over(case: Case, name: str) -> Iterator[Hit]:
     filter, forecast = case.filter, case.forecast
     over = maxima.excess(case, name)
-    if over is None:
+    gap = gaps.bound_by(filter, over.candidate.binding) if over is not None else None
+    if over is None or gap is None:
         return
     exact = case.exact(over.figure)
     value = exact if exact is not None else over.figure.low
-    gap = gaps.bound_by(filter, over.candidate.binding)
-    if gap is None:
-        return
-    form, words = (
-        "",
-        ((name, forecast.in_words(name, value)), ("maximum", forecast.in_words(name, over.limit))),
+    form = "one" if len(maxima.built(case)) == 1 else ""
+    family = opening(over.candidate.family) if form else title(over.candidate.family)
+    facts: tuple[tuple[str, object], ...] = (
+        ("family", family),
+        (name, forecast.in_words(name, value)),
+        ("maximum", forecast.in_words(name, over.limit)),
+        *gap.facts,
     )
-    if len(maxima.built(case)) == 1:
-        form = "one"
-    maximum = filter.get("at_most", name)
+    out = maxima.way_out(case, name, over.limit) if form else None
+    if out is not None:
+        form = "other"
+        facts = (*facts, ("other", a_filter(out[0].family)), ("less", forecast.in_words(name, out[1].value)))
+    maximum, limit = filter.get("at_most", name), Place(("at_most", name))
     own = maximum is not None and maximum.origin == "own"
-    limit = Place(("at_most", name))
-    seconds = forecast.in_seconds(over.figure)
-    if name == "delay":
-        figure = (seconds.low, "s") if seconds is not None else (value, "samples")
-    else:
-        figure = (value, "bytes" if name == "memory" else "")
     yield Hit(
         f"cost/{name}-over-maximum",
         limit if own else Place(gap.stop),
-        (
-            ("family", opening(over.candidate.family) if form else title(over.candidate.family)),
-            *words,
-            *gap.facts,
-        ),
+        facts,
         form,
         gap.places if own else (*gap.places, (limit, "the maximum")),
-        figure,
+        _figure(case, name, value),
     )
+
+
+def _figure(case: Case, name: str, value: float) -> tuple[float, str]:
+    """The figure of a maximum that an `up_to` is held against: a delay in seconds where there is a rate."""
+    rate_hz = case.forecast.sample_rate_hz
+    if name == "delay":
+        return (value, "samples") if rate_hz is None else (value / rate_hz, "s")
+    return value, "bytes" if name == "memory" else ""

@@ -8,14 +8,22 @@ from collections.abc import Iterator
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Filter, Path, Place
-from bandwright.findings.case import Case
+from bandwright.findings import maxima
+from bandwright.findings.case import CHOICE, Case
+from bandwright.findings.level import reaches_pass_band
 from bandwright.findings.rules import Hit, finding
-from bandwright.forecast import bands
+from bandwright.forecast import bands, gaps
 from bandwright.forecast.bands import Band
-from bandwright.remedies import edges
+from bandwright.remedies import edges, relaxations
 
 NYQUIST = math.pi * (1.0 + 1e-12)
 """Half the sample rate in rad/sample, with room for the rounding of a frequency in Hz."""
+
+NARROW_ORDER = relaxations.NARROW_ORDER
+"""A transition is narrow where even an elliptic filter needs a higher order (for a band: twice that)."""
+
+NARROW_TAPS = 1000
+"""Where only linear phase is allowed, a transition is narrow that takes more taps."""
 
 
 @finding(
@@ -50,7 +58,7 @@ def below_zero(case: Case) -> Iterator[Hit]:
     "edge/absurd-millihertz",
     "warning",
     {
-        "": "{edge} is in millihertz, a {share} part of the sample rate {rate}; if megahertz are meant, write"
+        "": "{edge} is in millihertz, {share} of the sample rate {rate}; if megahertz are meant, write"
         " `{meant}`.",
         "rate": "The sample rate {rate} is in millihertz, and the edge {edge} lies far above it; if"
         " megahertz are meant, write `{meant}`.",
@@ -124,48 +132,64 @@ def _in_megahertz(filter: Filter, path: Path) -> str:
         "all": "All edges of this filter, from {edge} upwards, are above Nyquist, {nyquist}; check the"
         " sample rate {rate}.",
     },
-    remedies=(edges.plausible_edge,),
+    remedies=(edges.divided_by_two_pi, edges.in_other_convention, edges.larger_rate),
     needs=("sample_rate",),
 )
 def beyond_nyquist(case: Case) -> Iterator[Hit]:
-    """An edge above half the sample rate; one for each band, and only one where all edges are."""
-    filter = case.filter
+    """An edge above half the sample rate; one for each band, and one for all where all are."""
+    filter, rate = case.filter, case.filter.get("sample_rate")
+    if _millihertz_rate(filter) is not None:
+        return
     found = [(path, w) for path, w in _edges(filter) if w is not None]
     beyond = [path for path, w in found if w > NYQUIST]
-    rate, rate_hz = filter.get("sample_rate"), case.forecast.sample_rate_hz
-    nyquist = quantities.show(rate_hz / 2, "frequency") if rate_hz is not None else "1 pi"
-    facts = (
+    whole = len(found) > 1 and not filter.is_unknown("bands")
+    if whole and len(beyond) == len(found) and not any(_normalised(filter, path) for path in beyond):
+        lowest = min(found, key=lambda one: one[1])[0]
+        facts = (*_named(filter, lowest), *_half_the_rate(case, lowest))
+        related = tuple((Place(path), "above Nyquist") for path in beyond)
+        yield Hit("edge/beyond-nyquist", Place(("sample_rate",)), facts, "all", related)
+        return
+    seen: set[Path] = set()
+    for path in beyond:
+        if path[:2] not in seen:
+            seen.add(path[:2])
+            by_rate = rate is not None and not _normalised(filter, path)
+            related = ((Place(("sample_rate",)), "the sample rate"),) if by_rate else ()
+            form, meant = _reading(filter, path)
+            facts = (*_named(filter, path), *_half_the_rate(case, path), ("meant", meant))
+            yield Hit("edge/beyond-nyquist", Place(path), facts, form, related)
+
+
+def _reading(filter: Filter, path: Path) -> tuple[str, str]:
+    """Which sentence fits an edge above Nyquist, and what the edge may mean instead."""
+    if (angular := edges.angular(filter, path)) is not None:
+        return "angular", quantities.show_quantity(angular)
+    if (other := edges.other_convention(filter.quantity(*path))) is not None:
+        return "convention", quantities.show_quantity(other)
+    rate = filter.get("sample_rate")
+    from_device = rate is not None and rate.origin == "device" and not _normalised(filter, path)
+    return "device" if from_device else "", ""
+
+
+def _half_the_rate(case: Case, path: Path) -> tuple[tuple[str, object], ...]:
+    """Nyquist in the unit of an edge, and where it comes from."""
+    filter, edge, rate = case.filter, case.filter.quantity(*path), case.filter.get("sample_rate")
+    normalised = quantities.UNITS[edge.unit].per_nyquist if edge is not None else None
+    if edge is not None and normalised is not None:
+        nyquist = f"{normalised:g} {edge.unit}"
+    else:
+        nyquist = quantities.show((case.forecast.sample_rate_hz or 0.0) / 2, "frequency")
+    return (
         ("nyquist", nyquist),
         ("rate", rate.written if rate else ""),
         ("device", filter.text("device") or ""),
     )
-    if _millihertz_rate(filter) is not None:
-        return
-    if len(beyond) > 1 and len(beyond) == len(found) and rate is not None:
-        lowest = min(found, key=lambda one: one[1])[0]
-        related = tuple((Place(path), "above Nyquist") for path in beyond)
-        yield Hit(
-            "edge/beyond-nyquist",
-            Place(("sample_rate",)),
-            (*_named(filter, lowest), *facts),
-            "all",
-            related,
-        )
-        return
-    seen: set[Path] = set()
-    for path in beyond:
-        if path[:2] in seen:
-            continue
-        seen.add(path[:2])
-        form = "device" if rate is not None and rate.origin == "device" else ""
-        meant = edges.angular(filter, path)
-        if meant is not None:
-            form = "angular"
-        elif (meant := edges.other_convention(filter, path)) is not None:
-            form = "convention"
-        words = (("meant", quantities.show_quantity(meant)),) if meant is not None else ()
-        related = ((Place(("sample_rate",)), "the sample rate"),) if rate is not None else ()
-        yield Hit("edge/beyond-nyquist", Place(path), (*_named(filter, path), *facts, *words), form, related)
+
+
+def _normalised(filter: Filter, path: Path) -> bool:
+    """Whether an edge is written against the sample rate."""
+    edge = filter.quantity(*path)
+    return edge is not None and quantities.UNITS[edge.unit].per_nyquist is not None
 
 
 @finding(
@@ -175,22 +199,33 @@ def beyond_nyquist(case: Case) -> Iterator[Hit]:
         "": "This {kind} band runs from {low} down to {high}, so it holds no frequency; swap the two.",
         "equal": "This {kind} band starts and ends at {low}, so it holds no more than one frequency; give"
         " it a width.",
+        "nyquist": "This {kind} band starts at Nyquist, where it has to end, so it holds no more than one"
+        " frequency; lower its start.",
+        "zero": "This {kind} band ends at 0 Hz, where it starts, so it holds no more than one frequency;"
+        " raise its end.",
     },
     remedies=(edges.swap_edges,),
+    needs=("sample_rate",),
 )
 def from_above_to(case: Case) -> Iterator[Hit]:
     """A band whose edges are the wrong way round, or equal."""
     for band in _in_range(case.filter):
+        if band.low is None or band.high is None or band.low < band.high:
+            continue
         low, high = (case.filter.get(*band.edge_path(side)) for side in ("low", "high"))
-        if low is not None and high is not None and band.low is not None and band.high is not None:
-            if band.low >= band.high:
-                yield Hit(
-                    "edge/from-above-to",
-                    Place(band.edge_path("low")),
-                    (("kind", band.kind), ("low", low.written), ("high", high.written)),
-                    "equal" if band.low == band.high else "",
-                    ((Place(band.edge_path("high")), "the other edge"),),
-                )
+        facts = (
+            ("kind", band.kind),
+            ("low", low.written if low else ""),
+            ("high", high.written if high else ""),
+        )
+        if low is None:
+            yield Hit("edge/from-above-to", Place(band.edge_path("high")), facts, "zero")
+        elif high is None:
+            yield Hit("edge/from-above-to", Place(band.edge_path("low")), facts, "nyquist")
+        else:
+            form = "equal" if band.low == band.high else ""
+            related = ((Place(band.edge_path("high")), "the other edge"),)
+            yield Hit("edge/from-above-to", Place(band.edge_path("low")), facts, form, related)
 
 
 @finding(
@@ -198,6 +233,7 @@ def from_above_to(case: Case) -> Iterator[Hit]:
     "error",
     "This {kind} band lies below the {other} band that stands ahead of it; put the bands in order of rising"
     " frequency.",
+    needs=("sample_rate",),
 )
 def bands_out_of_order(case: Case) -> Iterator[Hit]:
     """A band that lies wholly below the one before it."""
@@ -225,6 +261,7 @@ def bands_out_of_order(case: Case) -> Iterator[Hit]:
         "no-to": "This {kind} band has no `to`, so it reaches Nyquist over the {other} band after it; give"
         " it a `to`.",
     },
+    needs=("sample_rate",),
 )
 def bands_overlap(case: Case) -> Iterator[Hit]:
     """Neighbours that share frequencies, or touch where one of them passes."""
@@ -281,6 +318,64 @@ def no_stop_band(case: Case) -> Iterator[Hit]:
     kinds = {kind for _, kind in case.filter.band_kinds()}
     if kinds == {"pass"}:
         yield Hit("edge/no-stop-band", Place(("bands",), "key"))
+
+
+@finding(
+    "edge/shape-not-judged-yet",
+    "warning",
+    "No IIR order can be computed yet for a mask of this shape, so nothing here says whether it can be met;"
+    " FIR families are judged.",
+    needs=CHOICE,
+)
+def shape_not_judged_yet(case: Case) -> Iterator[Hit]:
+    """Only IIR families are allowed, and the mask is none that their orders are computed for."""
+    forecast, kinds = case.forecast, {kind for _, kind in case.filter.band_kinds()}
+    allowed = [one for one in forecast.candidates if one.allowed]
+    if not allowed or forecast.selectivity is not None or any(one.kind == "fir" for one in allowed):
+        return
+    if {"pass", "stop"} <= kinds and not reaches_pass_band(case.filter):
+        yield Hit("edge/shape-not-judged-yet", Place(("bands",), "key"))
+
+
+@finding(
+    "edge/transition-narrow",
+    "warning",
+    {
+        "": "The transition is only {low} to {high}, so even an elliptic filter, the smallest of all, needs"
+        " order {order}; widen it, or decimate first.",
+        "linear": "The transition is only {low} to {high}, so linear phase takes {taps} taps; widen it, or"
+        " decimate first.",
+        "about": "The transition is only {low} to {high}, so linear phase takes about {taps} taps; widen it,"
+        " or decimate first.",
+    },
+    remedies=(relaxations.wider_transition, relaxations.fewer_taps(NARROW_TAPS)),
+    needs=CHOICE,
+)
+def transition_narrow(case: Case) -> Iterator[Hit]:
+    """A transition that makes every filter long, of a filter that keeps its maxima all the same."""
+    forecast, filter = case.forecast, case.filter
+    chosen = case.chosen()
+    if chosen is None or not maxima.keeps_all(case):
+        return
+    scale = 2 if forecast.selectivity is not None and forecast.selectivity.doubles else 1
+    elliptic = forecast.candidate("elliptic")
+    if elliptic is not None and elliptic.least_order is not None:
+        gap = gaps.bound_by(filter, elliptic.binding)
+        if gap is not None and elliptic.least_order > NARROW_ORDER * scale:
+            facts = (*gap.facts, ("order", elliptic.least_order))
+            yield Hit("edge/transition-narrow", Place(gap.stop), facts, "", gap.places)
+    elif chosen.taps is not None and case.exceeds(chosen.taps, NARROW_TAPS):
+        gap, exact = gaps.narrowest(filter), case.exact(chosen.taps)
+        if gap is not None:
+            taps = exact if exact is not None else chosen.taps.value
+            form = "linear" if exact is not None else "about"
+            yield Hit(
+                "edge/transition-narrow",
+                Place(gap.stop),
+                (*gap.facts, ("taps", f"{taps:g}")),
+                form,
+                gap.places,
+            )
 
 
 def _edges(filter: Filter) -> Iterator[tuple[Path, float | None]]:

@@ -34,8 +34,8 @@ unknown_name = reported(
     {
         "": (
             "`{written}` is none of the names of `{key}`; the nearest one is `{nearest}`.",
-            "`{written}` is none of the names of `{key}`; there are {names}.",
-            "`{written}` is none of the names of `{key}`.",
+            "`{written}` is none of the names of `{key}`, which are {names}.",
+            "`{written}` is none of the names of `{key}`; take one that the reference lists.",
         )
     },
 )
@@ -70,14 +70,30 @@ wrong_kind = reported(
     "key/wrong-kind",
     "error",
     {
-        "mapping-wanted": "`{key}` holds keys of its own, but `{written}` is not a key with a value; write"
-        " for instance `{example}`.",
-        "list-wanted": "`{key}` is a list, but `{written}` is not one; write for instance `{example}`.",
-        "text-wanted": "`{key}` takes one value ({wanted}), not a list or keys; write for instance"
-        " `{example}`.",
-        "empty": "`{key}` has no value; write {wanted}, for instance `{example}`.",
-        "not-a-number": "`{written}` can't be read as {wanted}, which `{key}` takes; write for instance"
-        " `{example}`.",
+        "mapping-wanted": (
+            "`{key}` holds keys of its own, but `{written}` is not a key with a value; write for instance"
+            " `{example}`.",
+            "`{key}` holds keys of its own, but `{written}` is not a key with a value; write each key on a"
+            " line below it.",
+        ),
+        "list-wanted": (
+            "`{key}` is a list, but `{written}` is not one; write for instance `{example}`.",
+            "`{key}` is a list, but `{written}` is not one; start each item on a line of its own with a"
+            " dash.",
+        ),
+        "text-wanted": (
+            "`{key}` takes one value ({wanted}), not a list or keys; write for instance `{example}`.",
+            "`{key}` takes one value, not a list or keys; write for instance `{example}`.",
+        ),
+        "empty": (
+            "`{key}` has no value; write {wanted}, for instance `{example}`.",
+            "`{key}` has no value; write for instance `{example}`.",
+            "`{key}` has no value; write one, or remove the key.",
+        ),
+        "not-a-number": (
+            "`{written}` can't be read as {wanted}, which `{key}` takes; write for instance `{example}`.",
+            "`{written}` can't be read as what `{key}` takes; write for instance `{example}`.",
+        ),
         "not-a-whole-number": "`{written}` is not a whole number, which `{key}` takes; write for instance"
         " `{example}`.",
         "too-small": "`{key}: {written}` is too small; the least that it takes is {least}.",
@@ -85,10 +101,13 @@ wrong_kind = reported(
         " `{example}`.",
         "bad-finding": "`{written}` is not the name of a finding, which has an area and a slash; write for"
         " instance `{example}`.",
-        "band-keys": "A band item has exactly one of the keys `pass`, `stop` and `bounds`, but this one has"
-        " {found}; give each its own item.",
-        "key-not-text": "A key is a plain word, but here a list or a mapping stands before the colon in"
-        " {where}.",
+        "band-keys": (
+            "A band item has exactly one of the keys `pass`, `stop` and `bounds`, but this one has {found};"
+            " give each its own item.",
+            "A band item has exactly one of the keys `pass`, `stop` and `bounds`, but this one has none of"
+            " them.",
+        ),
+        "key-not-text": "A key is a plain word, but a list or keys stand before the colon here, in {where}.",
         "bad-word": "`{written}` is no number format that can be built, which `{key}` takes; write for"
         " instance `{example}`.",
     },
@@ -109,9 +128,15 @@ wrong_unit = reported(
     "key/wrong-unit",
     "error",
     {
-        "dimension": "`{unit}` is a unit of {found}, not of {dimension}; the units of `{key}` are {units}.",
+        "dimension": (
+            "`{unit}` is a unit of {found}, not of {dimension}; the units of `{key}` are {units}.",
+            "`{unit}` is a unit of {found}, not of {dimension}, which `{key}` takes.",
+        ),
         "spelling": "`{unit}` is not spelt like a unit of `{key}`, where capitals count; write `{nearest}`.",
-        "unknown": "`{unit}` is not a unit of `{key}`; its units are {units}.",
+        "unknown": (
+            "`{unit}` is not a unit of `{key}`; its units are {units}.",
+            "`{unit}` is not a unit of {dimension}, which `{key}` takes.",
+        ),
     },
 )
 

@@ -10,6 +10,7 @@ from bandwright.bandfile.values import Filter, Path, Place, Quantity, Setting
 from bandwright.findings.case import Case
 from bandwright.findings.rules import Find, Hit, finding
 from bandwright.forecast import bands
+from bandwright.forecast.bands import Band
 from bandwright.remedies import levels
 
 LEAST_ATTENUATION_DB = 0.5
@@ -195,31 +196,49 @@ def _written(filter: Filter, path: Path) -> str:
 @finding(
     "level/stop-above-pass",
     "warning",
-    "The stop band may have a gain of {stop}, but the pass band may be as low as {passed}, so a plain wire"
-    " would do; stop more, or pass more evenly.",
+    {
+        "": "The stop band may have a gain of {stop}, but the pass band may be as low as {passed}, so a plain"
+        " wire would do; stop more, or pass more evenly.",
+        "relative": "The stop band is to lie {attenuation} below the pass band, whose gain alone may vary by"
+        " {ripple}; ask for more attenuation, or less ripple.",
+    },
 )
 def stop_above_pass(case: Case) -> Iterator[Hit]:
     """A stop band that allows the gain that a pass band may have; told where nothing else is wrong."""
-    if any(True for _ in _slips(case.filter)):
+    filter, lowest = case.filter, _lowest_pass_band(case.filter)
+    if lowest is None or any(True for _ in _slips(filter)):
         return
-    items = bands.bands(case.filter)
-    floors = [band for band in items if band.kind == "pass" and band.least is not None]
-    lowest = min(floors, key=lambda band: band.least or 0.0, default=None)
-    if lowest is None or lowest.least is None:
-        return
-    for band in items:
-        if band.kind == "stop" and band.most is not None and band.most >= lowest.least:
-            place = Place(_level_path(case.filter, band.index, "stop"))
-            yield Hit(
-                "level/stop-above-pass",
-                place,
-                (
-                    ("stop", quantities.show(band.most, "gain")),
-                    ("passed", quantities.show(lowest.least, "gain")),
-                ),
-                "",
-                ((Place(_level_path(case.filter, lowest.index, "pass")), "the pass band's level"),),
-            )
+    for band in _reaching(filter):
+        stop, passed = band.most or 0.0, lowest.least or 0.0
+        facts = (
+            ("stop", quantities.show(stop, "gain")),
+            ("passed", quantities.show(passed, "gain")),
+            ("attenuation", quantities.show(-stop, "level")),
+            ("ripple", quantities.show(-passed, "level")),
+        )
+        form = "relative" if band.relative and lowest.relative else ""
+        related = ((Place(_level_path(filter, lowest.index, "pass")), "the pass band's level"),)
+        place = Place(_level_path(filter, band.index, "stop"))
+        yield Hit("level/stop-above-pass", place, facts, form, related)
+
+
+def reaches_pass_band(filter: Filter) -> bool:
+    """Whether some stop band allows the gain that a pass band may have."""
+    return any(True for _ in _reaching(filter))
+
+
+def _reaching(filter: Filter) -> Iterator[Band]:
+    lowest = _lowest_pass_band(filter)
+    for band in bands.bands(filter):
+        most = band.most if band.kind == "stop" else None
+        if lowest is not None and most is not None and most >= (lowest.least or 0.0):
+            yield band
+
+
+def _lowest_pass_band(filter: Filter) -> Band | None:
+    """The pass band whose gain may be the lowest."""
+    floors = [band for band in bands.bands(filter) if band.kind == "pass" and band.least is not None]
+    return min(floors, key=lambda band: band.least or 0.0, default=None)
 
 
 def _level_path(filter: Filter, index: int, kind: str) -> Path:

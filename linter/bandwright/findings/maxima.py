@@ -6,6 +6,7 @@ from typing import NamedTuple
 
 from bandwright.findings.case import Case
 from bandwright.forecast.candidates import Candidate
+from bandwright.forecast.forecast import MAXIMA
 from bandwright.forecast.types import Figure
 
 
@@ -42,7 +43,7 @@ def excess(case: Case, name: str) -> Excess | None:
         over.append((one, figure))
     if not over or not all(case.exceeds(figure, limit) for _, figure in over):
         return None
-    candidate, figure = min(over, key=lambda pair: pair[1].low)
+    candidate, figure = min(over, key=lambda pair: pair[1].value)
     return Excess(candidate, figure, limit)
 
 
@@ -53,4 +54,25 @@ def keeps_all(case: Case) -> bool:
         Waiting: an answer decides it that is not there yet.
     """
     chosen = case.chosen()
-    return chosen is None or case.forecast.within(chosen) is not False
+    if chosen is None:
+        return True
+    for name in MAXIMA:
+        limit, figure = case.forecast.maximum(name), case.forecast.figure(chosen, name)
+        if limit is not None and figure is not None and case.exceeds(figure, limit):
+            return False
+    return True
+
+
+def way_out(case: Case, name: str, limit: float) -> tuple[Candidate, Figure] | None:
+    """The candidate that the keys do not admit, and that keeps this maximum best."""
+    admitted = [one.family for one in built(case)]
+    fitting = [
+        (figure.value, one.family, one, figure)
+        for one in case.forecast.candidates
+        if one.family not in admitted
+        and (one.order or one.taps)
+        and (figure := case.forecast.figure(one, name)) is not None
+        and figure.high <= limit
+    ]
+    _, _, one, figure = min(fitting, default=(0.0, "", None, None))
+    return (one, figure) if one is not None and figure is not None else None

@@ -7,16 +7,20 @@ from collections.abc import Iterator
 from bandwright import limits
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Place
-from bandwright.findings import gaps, maxima
+from bandwright.findings import maxima
 from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.rules import Hit, finding
-from bandwright.findings.words import a_filter, opening
-from bandwright.forecast import reliefs
+from bandwright.findings.words import a_filter, opening, title
+from bandwright.forecast import gaps, reliefs
 from bandwright.forecast.forecast import MAXIMA
+from bandwright.forecast.gaps import Gap
 from bandwright.remedies import families, relaxations
 
 NEAR = 0.25
 """An order is near the next smaller one where it exceeds that by less than this before rounding up."""
+
+SMALL_MOVE = 0.2
+"""A stop edge that moves by less than this share of its transition asks for little less."""
 
 
 @finding(
@@ -49,15 +53,8 @@ def over_maximum(case: Case) -> Iterator[Hit]:
     gap = gaps.bound_by(filter, one.binding)
     if gap is None:
         return
-    smaller = [
-        (other.order, other.family)
-        for other in case.forecast.candidates
-        if other.order is not None and other.order <= over.limit
-    ]
-    words: tuple[tuple[str, object], ...] = ()
-    if smaller:
-        least, family = min(smaller)
-        words = (("other", a_filter(family)), ("less", least))
+    out = maxima.way_out(case, "order", over.limit)
+    words = (("other", a_filter(out[0].family)), ("less", out[0].order)) if out is not None else ()
     family_key = filter.get("family")
     one_family = (
         family_key is not None and family_key.origin == "own" and len(filter.names("family") or ()) == 1
@@ -67,7 +64,7 @@ def over_maximum(case: Case) -> Iterator[Hit]:
         "order/over-maximum",
         place,
         (*facts, *gap.facts, *words),
-        "" if smaller else "alone",
+        "" if out is not None else "alone",
         (*gap.places, *_maximum(case)),
         figure,
     )
@@ -110,7 +107,7 @@ def _maximum(case: Case, name: str = "order") -> tuple[tuple[Place, str], ...]:
         "about": "{family} needs {taps} taps or more, maximum {maximum}, because the transition is only"
         " {low} to {high}; widen it, or allow more.",
     },
-    remedies=(relaxations.raise_taps,),
+    remedies=(relaxations.within_maximum_taps, relaxations.raise_taps),
     needs=CHOICE,
 )
 def taps_over_maximum(case: Case) -> Iterator[Hit]:
@@ -194,7 +191,7 @@ def pinned_too_low(case: Case) -> Iterator[Hit]:
     one = min(found, key=lambda one: one.least_order or 0)
     gap = gaps.bound_by(case.filter, one.binding)
     if gap is not None:
-        facts = (("order", order), ("family", opening(one.family)), ("least", one.least_order), *gap.facts)
+        facts = (("order", order), ("family", title(one.family)), ("least", one.least_order), *gap.facts)
         yield Hit("order/pinned-too-low", Place(("order",)), facts, "", gap.places)
 
 
@@ -209,45 +206,62 @@ def pinned_too_low(case: Case) -> Iterator[Hit]:
 def pinned_above_least(case: Case) -> Iterator[Hit]:
     """The order that the filter pins is higher than the chosen family needs."""
     order, chosen = case.filter.count("order"), case.chosen()
-    if order is None or chosen is None or chosen.least_order is None or chosen.least_order >= order:
+    if order is None or chosen is None or chosen.least_order is None or not maxima.keeps_all(case):
         return
-    facts = (("order", order), ("family", opening(chosen.family)), ("least", chosen.least_order))
+    if order <= chosen.least_order + (_step(case) if chosen.tie else 0):
+        return
+    facts = (("order", order), ("family", title(chosen.family)), ("least", chosen.least_order))
     yield Hit("order/pinned-above-least", Place(("order",)), facts)
 
 
 @finding(
     "order/one-less-is-near",
     "information",
-    "The {family} order is {unrounded} before rounding up to {order}; {change} makes it {less}.",
+    "The {family} order is {unrounded} before rounding up to {order}; {after} here instead of {before} makes"
+    " it {less}.",
     remedies=(relaxations.one_order_less,),
     needs=CHOICE,
 )
 def one_less_is_near(case: Case) -> Iterator[Hit]:
-    """A small relaxation of one edge saves an order, of a filter that is in order as it stands."""
-    chosen = case.chosen()
+    """A small move of the stop edge saves an order, of a filter that is in order as it stands."""
+    chosen, step = case.chosen(), _step(case)
     if chosen is None or chosen.order is None or chosen.order_unrounded is None or chosen.tie:
+        return
+    smaller, gap = chosen.order - step, gaps.bound_by(case.filter, chosen.binding)
+    if gap is None or smaller < 1 or chosen.order_unrounded - smaller > NEAR * step:
         return
     if case.filter.count("order") is not None or not maxima.keeps_all(case):
         return
-    step = 2 if case.forecast.selectivity is not None and case.forecast.selectivity.doubles else 1
-    smaller = chosen.order - step
-    if smaller < 1 or chosen.order_unrounded - smaller > NEAR * step:
-        return
     relief = next(reliefs.reliefs(case.filter, chosen.family, smaller), None)
-    if relief is None:
+    if relief is None or relief.path != gap.stop:
         return
-    before, after = (quantities.show_quantity(one) for one in (relief.before, relief.after))
-    yield Hit(
-        "order/one-less-is-near",
-        Place(relief.path),
-        (
-            ("family", opening(chosen.family)),
-            ("unrounded", f"{chosen.order_unrounded:.2f}"),
-            ("order", chosen.order),
-            ("change", f"{after} here instead of {before}"),
-            ("less", relief.order_after),
-        ),
+    moved = abs(relief.after.number / relief.before.number - 1.0) * _stop_edge(gap)
+    if moved > SMALL_MOVE * gap.width:
+        return
+    facts = (
+        ("family", title(chosen.family)),
+        ("unrounded", _unrounded(chosen.order_unrounded)),
+        ("order", chosen.order),
+        ("before", quantities.show_quantity(relief.before)),
+        ("after", quantities.show_quantity(relief.after)),
+        ("less", relief.order_after),
     )
+    yield Hit("order/one-less-is-near", Place(relief.path), facts, "", gap.places)
+
+
+def _step(case: Case) -> int:
+    """From one order to the next: two for band-pass and band-stop."""
+    return 2 if case.forecast.selectivity is not None and case.forecast.selectivity.doubles else 1
+
+
+def _unrounded(order: float) -> str:
+    """An order with two places, or as many as it takes to tell it from a whole number."""
+    places = next((places for places in range(2, 9) if float(f"{order:.{places}f}") % 1.0), 9)
+    return f"{order:.{places}f}"
+
+
+def _stop_edge(gap: Gap) -> float:
+    return gap.low if gap.stop == gap.below else gap.high
 
 
 @finding(

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Set
 from dataclasses import dataclass
 from typing import Literal
 
@@ -22,8 +22,11 @@ Says = str | Mapping[str, str | tuple[str, ...]]
 LONGEST_SENTENCE = 160
 """Characters. A sentence that comes out longer gives way to the next of its form."""
 
-LONGEST_QUOTE = 48
-"""Characters of a fact; the user's own words are cut there."""
+LONGEST_QUOTES = (48, 32, 20, 12)
+"""Characters of a fact: the user's own words are cut there, and shorter where the sentence needs it."""
+
+LISTS = ("names", "units", "wanted", "example")
+"""Facts that are not the user's own words, and not cut."""
 
 PLACES = {"top": "the top level", "filter": "a filter", "device": "a device"}
 """How sentences call the mappings of the band file that have no key of their own."""
@@ -62,24 +65,30 @@ class Rule:
 
     def message(self, hit: Hit) -> str:
         """The sentence of a hit."""
-        facts = {name: _word(name, value) for name, value in hit.facts}
+        there = {name for name, value in hit.facts if value != ""}
+        fitting = [one for one in self.says[hit.form] if _says_with(one, there)] or self.says[hit.form][-1:]
         sentence = ""
-        for template in self.says[hit.form]:
-            try:
+        for longest in LONGEST_QUOTES:
+            facts = {name: _word(name, value, longest) for name, value in hit.facts}
+            for template in fitting:
                 sentence = template.format_map(facts)
-            except KeyError:
-                continue
-            if len(sentence) <= LONGEST_SENTENCE:
-                break
+                if len(sentence) <= LONGEST_SENTENCE:
+                    return sentence
         return sentence
 
 
-def _word(name: str, value: object) -> object:
-    if not isinstance(value, str):
+def _says_with(sentence: str, names: Set[str]) -> bool:
+    """Whether a sentence quotes no other facts than these."""
+    return all(part.partition("}")[0] in names for part in sentence.split("{")[1:])
+
+
+def _word(name: str, value: object, longest: int) -> object:
+    """A fact as its sentence quotes it."""
+    if not isinstance(value, str) or name in LISTS:
         return value
-    if name == "where":
-        return PLACES.get(value, f"`{value}`")
-    return value if len(value) <= LONGEST_QUOTE else f"{value[: LONGEST_QUOTE - 1]}…"
+    if name in ("where", "belongs"):
+        value = PLACES.get(value, f"`{value}`")
+    return value if len(value) <= longest else f"{value[: longest - 1]}…"
 
 
 def finding(

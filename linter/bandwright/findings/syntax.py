@@ -13,8 +13,13 @@ not_yaml = reported(
         " it; close it with another {quote}.",
         "unclosed-bracket": "The bracket `{bracket}` is opened here and never closed; close it with"
         " `{closing}`.",
-        "colon-in-value": "The value of `{key}` holds a colon, which YAML takes for another key; put the"
-        " value in quotes.",
+        "unopened-bracket": "No bracket is open that `{bracket}` could close; remove it, or write the one"
+        " that opens.",
+        "colon-in-value": (
+            "The value of `{key}` holds a colon, which YAML takes for another key; put the value in quotes.",
+            "`{written}` holds a colon, which YAML takes for another key; put it in quotes.",
+        ),
+        "missing-comma": "`{written}` runs on into another entry; write a comma between the two.",
         "no-colon": (
             "`{written}` is neither a key nor a list item; if the key `{nearest}` is meant, write"
             " `{nearest}:` before its value.",
@@ -25,11 +30,13 @@ not_yaml = reported(
             "There is no space after the colon of `{key}`, so YAML takes the whole for text; write `{mend}`.",
             "There is no space after the colon of `{key}`, so YAML takes the whole for text; put one there.",
         ),
+        "no-dash": "`{written}` stands in a list, but does not start with a dash as its neighbours do; write"
+        " `- ` before it.",
         "indent": "`{written}` is indented by {column}, but the entries beside it by {expected}; indent it"
         " alike.",
         "character": (
-            "A value of YAML can't start with `{character}`; put the value of `{key}` in quotes.",
-            "A value of YAML can't start with `{character}`; put it in quotes.",
+            "A value of YAML can't start with the character {character}; put the value of `{key}` in quotes.",
+            "A value of YAML can't start with the character {character}; put it in quotes.",
         ),
         "unknown-alias": "No anchor `&{name}` comes before this alias, so it stands for nothing; write the"
         " value itself.",

@@ -10,7 +10,7 @@ from bandwright.bandfile.values import Filter
 from bandwright.forecast.families import FAMILIES, FamilyRow
 from bandwright.forecast.questions import Answers, FirLength
 from bandwright.forecast.settle import settled
-from bandwright.forecast.structures import structure_for
+from bandwright.forecast.structures import DEFAULT_STRUCTURE, structure_for
 from bandwright.forecast.types import Binding, Figure
 from bandwright.theory.closed_form import fir_length, iir
 from bandwright.theory.closed_form.selectivity import Selectivity
@@ -26,7 +26,7 @@ class Candidate:
     structure: str | None
     """None where none of the structures asked for suits the family."""
     allowed: bool
-    """Whether the filter's own `family` and `phase` admit it."""
+    """Whether the filter's own `family`, `phase` and `structure` admit it."""
     order: int | None = None
     """The digital order that it is built with: the least, or the one that the filter pins."""
     least_order: int | None = None
@@ -42,13 +42,17 @@ def candidates(
 ) -> tuple[Candidate, ...]:
     """A candidate of every family that is judged, in the order of `families.FAMILIES`."""
     asked_families = filter.names("family")
-    asked_structures = filter.names("structure")
+    asked_structures, structure_key = filter.names("structure"), filter.get("structure")
     found = []
     for row in FAMILIES.values():
-        allowed = (asked_families is None or row.name in asked_families) and not (
-            row.kind == "iir" and mask.phase == "linear"
-        )
         structure = structure_for(row.kind, asked_structures)
+        if structure is None and structure_key is not None and structure_key.origin == "device":
+            structure = DEFAULT_STRUCTURE[row.kind]
+        allowed = (
+            (asked_families is None or row.name in asked_families)
+            and not (row.kind == "iir" and mask.phase == "linear")
+            and structure is not None
+        )
         if row.kind == "iir":
             found.append(_iir(filter, mask, selectivity, row, structure, allowed))
         else:

@@ -145,6 +145,8 @@ class Forecast:
     def _tap_bits(self, taps: Figure, form: bits.NumberFormat) -> Figure | None:
         if self.mask is None:
             return None
+        if not hasattr(bits, "fir_bits"):
+            return None
         predicted = bits.fir_bits(round(taps.value), self.mask, form)
         return Figure(predicted.value, predicted.low, predicted.high, "estimated", "bits")
 
@@ -266,10 +268,10 @@ class Forecast:
             return one.why_not
         if one.order is not None and one.least_order is not None and one.order < one.least_order:
             return f"order {one.order} is pinned, the mask takes {one.least_order}"
-        if not one.allowed:
-            return "not the family asked for"
         if one.structure is None:
             return "none of the structures asked for suits it"
+        if not one.allowed:
+            return "not the family asked for"
         broken = ((name, figure, limit) for name, figure, limit in self._limited(one) if figure.value > limit)
         return ", ".join(
             f"{name} {self.in_words(name, figure.value)}, maximum {self.in_words(name, limit)}"

@@ -16,7 +16,7 @@ ROUND_WITHIN = 5e-4
 
 
 def angular(filter: Filter, path: Path) -> Quantity | None:
-    """The edge divided by 2 pi, where that makes a round frequency below Nyquist out of one above.
+    """The edge divided by 2 pi, where that makes a round frequency below Nyquist out of an odd one above.
 
     So 6283 Hz at 4 kHz is taken for 6283 rad/s, which is 1 kHz.
     """
@@ -26,17 +26,16 @@ def angular(filter: Filter, path: Path) -> Quantity | None:
     number = edge.number / math.tau
     rounded = float(f"{number:.1e}")
     in_hertz = quantities.hertz(Quantity(rounded, edge.unit), rate_hz)
-    if in_hertz is None or in_hertz > rate_hz / 2 or abs(number - rounded) > ROUND_WITHIN * number:
+    if in_hertz is None or in_hertz > rate_hz / 2 or float(f"{edge.number:.2e}") == edge.number:
         return None
-    return Quantity(rounded, edge.unit)
+    return Quantity(rounded, edge.unit) if abs(number - rounded) <= ROUND_WITHIN * number else None
 
 
-def other_convention(filter: Filter, path: Path) -> Quantity | None:
-    """A normalised edge above Nyquist, read in the convention that puts it below.
+def other_convention(edge: Quantity | None) -> Quantity | None:
+    """A normalised edge in the convention that puts it below Nyquist; None where there is none.
 
     `0.6 fs` may be meant as 0.6 of Nyquist, and `1.2 pi` as 1.2 rad/sample.
     """
-    edge = filter.quantity(*path)
     if edge is None:
         return None
     if edge.unit == "fs" and edge.number <= 1.0:
@@ -46,15 +45,45 @@ def other_convention(filter: Filter, path: Path) -> Quantity | None:
     return None
 
 
-def plausible_edge(forecast: Forecast, place: Place) -> Iterator[Change]:
-    """Write the edge as it was most likely meant."""
-    for reading, why in (
-        (angular(forecast.filter, place.path), "the edge divided by 2 pi"),
-        (other_convention(forecast.filter, place.path), "the same number in another convention"),
-    ):
-        if reading is not None:
-            text = quantities.show_quantity(reading)
-            yield Change("changes-requirement", f"Write `{text}`, {why}", ((place.path, text),))
+def divided_by_two_pi(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Take the edge for an angular frequency."""
+    reading = angular(forecast.filter, place.path)
+    if reading is not None:
+        text = quantities.show_quantity(reading)
+        yield Change(
+            "changes-requirement", f"Write `{text}`, the edge divided by 2 pi", ((place.path, text),)
+        )
+
+
+def in_other_convention(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Take all edges of the same unit in another convention, as one filter is written in one."""
+    filter = forecast.filter
+    edge = filter.quantity(*place.path)
+    if edge is None or other_convention(edge) is None:
+        return
+    texts = []
+    for band in bands.bands(filter):
+        for path in (band.edge_path("low"), band.edge_path("high")):
+            other = filter.quantity(*path)
+            if other is not None and other.unit == edge.unit:
+                reading = other_convention(other)
+                if reading is None:
+                    return
+                texts.append((path, quantities.show_quantity(reading)))
+    words = {"fs": "fractions of Nyquist", "pi": "radians per sample"}[edge.unit]
+    written = ", ".join(f"`{text}`" for _, text in texts)
+    yield Change("changes-requirement", f"Take the edges for {words}: {written}", tuple(texts))
+
+
+def larger_rate(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Write the sample rate in the next larger unit."""
+    rate = forecast.filter.quantity("sample_rate")
+    larger = {"Hz": "kHz", "kHz": "MHz", "MHz": "GHz"}
+    if place.path == ("sample_rate",) and rate is not None and rate.unit in larger:
+        text = quantities.show_quantity(Quantity(rate.number, larger[rate.unit]))
+        yield Change(
+            "changes-requirement", f"Write `{text}` for the sample rate", ((("sample_rate",), text),)
+        )
 
 
 def megahertz(forecast: Forecast, place: Place) -> Iterator[Change]:

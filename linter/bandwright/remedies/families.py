@@ -13,7 +13,7 @@ from bandwright.remedies.change import Change, Remedy
 
 ORDER = "Use the {after[family]} family: order {after[order]} instead of {before[order]}"
 BITS = "Use the {after[family]} family: {after[bits]} coefficient bits instead of {before[bits]}"
-PINNED = "Use the {after[family]} family, which meets the mask with order {after[order]}"
+WITH_ORDER = "Use the {after[family]} family, which meets the mask with order {after[order]}"
 FIR = (
     "Use a linear-phase FIR filter: {after[taps]} taps, {after[multiplications]} multiplications per sample,"
     " {after[delay]} delay"
@@ -29,17 +29,16 @@ LEAST = {
 def least_order_family(forecast: Forecast, place: Place) -> Iterator[Change]:
     """Take the family with the least order, and the least that is monotone in the pass band."""
     chosen = forecast.chosen
-    if chosen is None or chosen.order is None:
-        return
+    before = chosen.order if chosen is not None else None
     smaller = sorted(
         (one.order, one.family)
         for one in forecast.candidates
-        if one.order is not None and one.order < chosen.order
+        if one.order is not None and (before is None or one.order < before)
     )
     proposed = [name for _, name in smaller[:1]]
     proposed += [name for _, name in smaller if FAMILIES[name].monotone_pass and name not in proposed][:1]
     for name in proposed:
-        yield Change("keeps-requirement", ORDER, _taking(forecast, name))
+        yield Change("keeps-requirement", WITH_ORDER if before is None else ORDER, _taking(forecast, name))
 
 
 def fewest_bits_family(forecast: Forecast, place: Place) -> Iterator[Change]:
@@ -62,7 +61,7 @@ def family_of_pinned_order(forecast: Forecast, place: Place) -> Iterator[Change]
         if one.least_order is not None and order is not None and one.least_order <= order
     ]
     for _, name in sorted(fitting, reverse=True)[:1]:
-        yield Change("keeps-requirement", PINNED, _taking(forecast, name))
+        yield Change("keeps-requirement", WITH_ORDER, _taking(forecast, name))
 
 
 def linear_phase_fir(forecast: Forecast, place: Place) -> Iterator[Change]:

@@ -3,13 +3,86 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 
 from bandwright.bandfile import quantities
-from bandwright.bandfile.values import Path, Place
+from bandwright.bandfile.values import Path, Place, Quantity
+from bandwright.forecast import gaps
 from bandwright.forecast.forecast import MAXIMA, Forecast
 from bandwright.forecast.reliefs import reliefs
 from bandwright.remedies.change import Change, Remedy
+
+NARROW_ORDER = 12
+"""An order that filters of the trade seldom go beyond: the maximum where a band file names none."""
+
+
+NAMES = {"taps": "number of taps", "multiplications": "of multiplications per sample"}
+"""How titles call the maxima whose key is a plural."""
+
+
+WIDER = 1.04
+"""A length falls somewhat more slowly than 1 / width."""
+
+
+def wider_transition(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Relax one number of the mask just enough that an elliptic filter has no more than the usual order."""
+    if forecast.selectivity is not None and (forecast.mask is None or forecast.mask.phase != "linear"):
+        yield from _relax(forecast, "elliptic", NARROW_ORDER * (2 if forecast.selectivity.doubles else 1))
+
+
+def fewer_taps(most: int) -> Remedy:
+    """Widen the narrowest transitions just enough that the filter has no more than `most` taps."""
+
+    def wider(forecast: Forecast, place: Place) -> Iterator[Change]:
+        yield from _widened(forecast, most)
+
+    return wider
+
+
+def _shorter(name: str, taps: Callable[[float], float]) -> Remedy:
+    def within(forecast: Forecast, place: Place) -> Iterator[Change]:
+        limit = forecast.maximum(name)
+        if limit is not None:
+            yield from _widened(forecast, math.floor(taps(limit)))
+
+    within.__doc__ = (
+        f"Widen the narrowest transitions just enough that an FIR filter keeps its maximum {name}."
+    )
+    return within
+
+
+within_maximum_taps = _shorter("taps", lambda limit: limit)
+within_maximum_multiplications = _shorter("multiplications", lambda limit: 2 * limit)
+within_maximum_delay = _shorter("delay", lambda limit: 2 * limit + 1)
+
+
+def _widened(forecast: Forecast, most: int) -> Iterator[Change]:
+    """Move the stop edges of transitions that are too narrow; an FIR filter's length goes by 1 / width."""
+    chosen, filter = forecast.chosen, forecast.filter
+    if chosen is None or chosen.taps is None or not most < chosen.taps.value < math.inf:
+        return
+    found = gaps.gaps(filter)
+    width = WIDER * min((one.width for one in found), default=0.0) * chosen.taps.value / most
+    moves = []
+    for one in found:
+        edge = filter.quantity(*one.stop)
+        if edge is None or one.width >= width:
+            continue
+        own, other = (one.low, one.high) if one.stop == one.below else (one.high, one.low)
+        number = edge.number * (other + (own - other) * width / one.width) / own
+        rounded = quantities.round_outward(number, "up" if number > edge.number else "down", edge.number)
+        moves.append((one.stop, edge, Quantity(rounded, edge.unit)))
+    if moves and all(after.number > 0 for _, _, after in moves):
+        words = " and ".join(
+            f"from {quantities.show_quantity(before)} to {quantities.show_quantity(after)}"
+            for _, before, after in moves
+        )
+        start = "Move the stop edges" if len(moves) > 1 else "Move the stop edge"
+        yield Change(
+            "changes-requirement",
+            f"{start} {words}: {{after[taps]}} taps instead of {{before[taps]}}",
+            tuple((path, quantities.show_quantity(after)) for path, _, after in moves),
+        )
 
 
 def within_maximum_order(forecast: Forecast, place: Place) -> Iterator[Change]:
@@ -51,8 +124,7 @@ def next_order(forecast: Forecast, place: Place) -> Iterator[Change]:
         step = 2 if forecast.selectivity is not None and forecast.selectivity.doubles else 1
         yield Change(
             "keeps-requirement",
-            "Take order {after[order]} instead of {before[order]}, which leaves a margin: {after[bits]}"
-            " coefficient bits",
+            "Take order {after[order]} instead of {before[order]}, which leaves a margin for rounding",
             ((("order",), str(chosen.order + step)),),
         )
 
@@ -73,9 +145,10 @@ def _raise(name: str) -> Remedy:
         ]
         enough = [value for value in figures if limit is not None and value > limit]
         if enough:
+            before, after = f"{{before[maximum_{name}]}}", f"{{after[maximum_{name}]}}"
             yield Change(
                 "changes-requirement",
-                f"Raise the maximum {name} from {{before[maximum_{name}]}} to {{after[maximum_{name}]}}",
+                f"Raise the maximum {NAMES.get(name, name)} from {before} to {after}",
                 ((("at_most", name), _written(forecast, name, min(enough))),),
             )
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from bandwright.bandfile.values import Place
+from bandwright.forecast.families import FAMILIES
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.structures import DEFAULT_STRUCTURE
 from bandwright.remedies.change import Change
@@ -24,8 +25,9 @@ def second_order_sections(forecast: Forecast, place: Place) -> Iterator[Change]:
 
 def suitable_structure(forecast: Forecast, place: Place) -> Iterator[Change]:
     """Take the usual structure of the kind of filter that the keys leave."""
-    kinds = {one.kind for one in forecast.candidates if one.allowed}
-    for kind in ("iir", "fir"):
-        if kind in kinds:
-            name = DEFAULT_STRUCTURE[kind]
-            yield Change("keeps-requirement", f"Use the structure `{name}`", ((("structure",), name),))
+    names = forecast.filter.names("family") or tuple(FAMILIES)
+    linear = forecast.filter.text("phase") == "linear"
+    kinds = {FAMILIES[name].kind for name in names if name in FAMILIES} - ({"iir"} if linear else set())
+    if len(kinds) == 1:
+        name = DEFAULT_STRUCTURE[kinds.pop()]
+        yield Change("keeps-requirement", f"Use the structure `{name}`", ((("structure",), name),))

@@ -5,8 +5,10 @@ from __future__ import annotations
 import random
 from functools import cache
 from pathlib import Path
+from typing import get_args
 
-from bandwright import exact
+import pytest
+
 from bandwright.analysis.analyse import Memo, analyse
 from bandwright.analysis.offer import offer
 from bandwright.analysis.present import present
@@ -18,38 +20,9 @@ from bandwright.faces.command.formats import check_json
 from bandwright.findings.rules import SEVERITIES
 from bandwright.forecast.questions import Answer, Question
 
-DEMO = Path(exact.__file__).parents[1] / "demo"
+CORPUS = Path(__file__).resolve().parents[2] / "corpus"
 TODAY = "2026-01-01"
 ORDERS = 20
-
-QUESTIONING = """\
-format: bandwright/1
-devices:
-  node:
-    sample_rate: 8 kHz
-    arithmetic: q15
-    at_most: {taps: 64, multiplications: 32, delay: 5 ms}
-filters:
-  near-its-taps:
-    device: node
-    phase: linear
-    bands:
-      - pass: {to: 1 kHz, ripple: 0.5 dB}
-      - stop: {from: 1.3 kHz, attenuation: 40 dB}
-  near-its-bits:
-    device: node
-    structure: cascade
-    bands:
-      - pass: {to: 200 Hz, ripple: 0.5 dB}
-      - stop: {from: 300 Hz, attenuation: 50 dB}
-  both-ways:
-    device: node
-    bands:
-      - stop: {to: 300 Hz, attenuation: 45 dB}
-      - pass: {from: 500 Hz, to: 1.5 kHz, ripple: 0.5 dB}
-      - stop: {from: 1.8 kHz, attenuation: 45 dB}
-    phase: linear
-"""
 
 answered = cache(answer)
 
@@ -80,12 +53,23 @@ def output(document: Document, dice: random.Random) -> str:
     return check_json.document(records, counts, len(document.filters))
 
 
-def test_twenty_orders_of_answers_end_in_the_same_bytes() -> None:
-    texts = [QUESTIONING, *(file.read_text(encoding="utf-8") for file in sorted(DEMO.glob("*.bands.yaml")))]
-    asked = 0
-    for text in texts:
-        document = read(text)
-        outputs = {output(document, random.Random(seed)) for seed in range(ORDERS)}
-        assert len(outputs) == 1
-        asked += len(shuffled(document, random.Random(0))[1])
-    assert asked >= 3, "the corpus asks too little for an order to matter"
+@pytest.fixture(scope="module")
+def asking() -> dict[str, Document]:
+    """The files of the corpus that ask so much that there is an order."""
+    documents = {file.name: read(file.read_text(encoding="utf-8")) for file in CORPUS.glob("*.bands.yaml")}
+    return {name: each for name, each in documents.items() if len(questions(each)) > 1}
+
+
+def questions(document: Document) -> set[Question]:
+    """All that a file asks."""
+    return set(shuffled(document, random.Random(0))[1])
+
+
+def test_twenty_orders_of_answers_end_in_the_same_bytes(asking: dict[str, Document]) -> None:
+    for name, document in asking.items():
+        assert len({output(document, random.Random(seed)) for seed in range(ORDERS)}) == 1, name
+
+
+def test_the_corpus_asks_for_every_kind_of_answer(asking: dict[str, Document]) -> None:
+    kinds = {type(question) for document in asking.values() for question in questions(document)}
+    assert kinds == set(get_args(Question))

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from bandwright.faces.server.markdown import Link, Table, render
+from bandwright.faces.markdown import Link, Table, render
 
 TABLE = Table(("edge", "order"), ("left", "right"), (("25 Hz", "9"), ("26 Hz", "10")), marked=0)
 

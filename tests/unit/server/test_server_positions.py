@@ -14,7 +14,7 @@ from bandwright.faces.server.positions import Encoding, LineIndex, lines_of
 ENCODINGS: tuple[Encoding, ...] = ("utf-8", "utf-16", "utf-32")
 UNIT_BYTES = {"utf-8": 1, "utf-16": 2, "utf-32": 4}
 
-TEXTS = st.text(st.sampled_from("ab é±Ω漢😀\u2028\u0085\x0c\t\r\n"), max_size=40)
+TEXTS = st.text(st.sampled_from("ab é±Ω漢😀\u2028\u0085\x0c\ufeff\t\r\n"), max_size=40)
 
 
 def units(text: str, encoding: Encoding) -> int:
@@ -60,19 +60,6 @@ def test_positions_outside_the_text_mean_its_nearest_end() -> None:
     index = LineIndex("ab\r\ncd", "utf-16")
     assert index.place(types.Position(0, 99)) == (0, 2)
     assert index.place(types.Position(7, 0)) == (1, 2)
-
-
-@pytest.mark.parametrize(("encoding", "mark"), [("utf-8", 3), ("utf-16", 1), ("utf-32", 1)])
-def test_a_byte_order_mark_counts_for_the_client_only(encoding: Encoding, mark: int) -> None:
-    # U+FEFF is 3 bytes in UTF-8, one unit in UTF-16 and UTF-32.
-    index = LineIndex("\ufeffab\ncd", encoding)
-    assert index.plain_range(Span(0, 1, 1, 1)) == {
-        "start": {"line": 0, "character": mark + 1},
-        "end": {"line": 1, "character": 1},
-    }
-    assert index.place(types.Position(0, mark + 1)) == (0, 1)
-    assert index.place(types.Position(0, 0)) == (0, 0)
-    assert index.place(types.Position(1, 1)) == (1, 1)
 
 
 def test_a_lone_surrogate_counts_as_one_unit() -> None:

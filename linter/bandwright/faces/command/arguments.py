@@ -15,11 +15,24 @@ CAUTION = (
 )
 
 
+class _Formatter(argparse.HelpFormatter):
+    """Help of 80 columns. To ask how wide the terminal is costs a check 5 ms, help or not."""
+
+    def __init__(self, prog: str) -> None:
+        super().__init__(prog, width=80)
+
+
 class Parser(argparse.ArgumentParser):
     """A parser that takes whole option names only and raises its complaints."""
 
     def __init__(self, program: str, description: str) -> None:
-        super().__init__(prog=program, description=description, epilog=CAUTION, allow_abbrev=False)
+        super().__init__(
+            prog=program,
+            description=description,
+            epilog=CAUTION,
+            allow_abbrev=False,
+            formatter_class=_Formatter,
+        )
 
     def error(self, message: str) -> NoReturn:
         raise CommandError(f"{self.prog}: {message}. `{self.prog} --help` tells what it takes.")

@@ -4,31 +4,47 @@ from __future__ import annotations
 
 import sys
 from argparse import Namespace
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from pathlib import Path
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
-from bandwright.analysis.types import Finding
 from bandwright.bandfile import reader
-from bandwright.bandfile.values import Document
 from bandwright.faces.command import terminal
-from bandwright.faces.command.arguments import Parser, add_paths, add_today, one_of
-from bandwright.faces.command.checking import STDIN, Checker, decoded, sought
+from bandwright.faces.command.arguments import CAUTION, Parser, add_paths, add_today, one_of
+from bandwright.faces.command.checking import STDIN, Checker, decoded, sought, write
 from bandwright.faces.command.error import CommandError
 from bandwright.faces.command.formats import check_text
 from bandwright.findings.rules import SEVERITIES
-from bandwright.project.files import write_atomically
 
 SOME_FINDINGS, NOT_ALL_READ = 1, 2
 """Exit statuses."""
 
+MANY = 64
+"""From so many files on, all cores share them; for fewer it takes longer to start the processes."""
 
-class Checked(NamedTuple):
-    """One file and what was found in it."""
+CHUNK = 8
+"""How many files a process is given at a time."""
 
-    name: str
-    document: Document
-    findings: tuple[Finding, ...]
+
+class Settings(NamedTuple):
+    """What decides how a file is checked and shown."""
+
+    form: str
+    colour: bool
+    stdin_name: str
+    today: str
+
+
+class Outcome(NamedTuple):
+    """What came of one file, in a form that crosses processes."""
+
+    problem: str = ""
+    """Why it could not be read."""
+    filters: int = 0
+    kinds: tuple[str, ...] = ()
+    """The severity of each finding, or `accepted`."""
+    found: tuple[Any, ...] = ()
+    """A line for each finding that is not accepted or, for JSON, a record for each finding."""
 
 
 def configure(parser: Parser) -> None:
@@ -51,26 +67,31 @@ def configure(parser: Parser) -> None:
         help="the mildest severity that makes the exit status 1: error, warning (default) or information",
     )
     add_today(parser)
+    parser.epilog = (
+        "Exit status: 0, nothing as severe as asked for; 1, findings; 2, something could not be read. "
+        + CAUTION
+    )
 
 
 def run(arguments: Namespace) -> int:
     """Check the files; 0: nothing as severe as asked for, 1: findings, 2: some file could not be read."""
-    checker = Checker(arguments.today)
     files, problems = sought(arguments.paths)
-    checked = _checked(files, arguments.stdin_name, checker, problems)
-    counts = dict.fromkeys((*SEVERITIES, "accepted"), 0)
-    if arguments.form == "json":
-        lines = _as_json(checked, checker, counts)
-    else:
-        colour = arguments.to is None and terminal.wants_colour(sys.stdout)
-        lines = _as_text(checked, counts, colour=colour)
-    if arguments.to is None:
-        for line in lines:
-            checker.progress.clear()
-            terminal.show(line)
-    else:
-        _write(arguments.to, lines)
-    checker.progress.clear()
+    colour = arguments.to is None and terminal.wants_colour(sys.stdout)
+    settings = Settings(arguments.form, colour, arguments.stdin_name, arguments.today)
+    outcomes: list[Outcome] = []
+    progress = terminal.Progress()
+    progress.show(f"checking {len(files)} files")
+    for outcome in _outcomes(files, settings):
+        outcomes.append(outcome)
+        progress.show(f"{len(outcomes)} of {len(files)} files checked")
+    progress.clear()
+    counts = {name: sum(one.kinds.count(name) for one in outcomes) for name in (*SEVERITIES, "accepted")}
+    output = _output(arguments.form, outcomes, counts)
+    if arguments.to is not None:
+        write(arguments.to, f"{output}\n")
+    elif output:
+        terminal.show(output)
+    problems += [outcome.problem for outcome in outcomes if outcome.problem]
     for problem in problems:
         terminal.say(problem)
     if problems:
@@ -79,53 +100,45 @@ def run(arguments: Namespace) -> int:
     return SOME_FINDINGS if any(counts[severity] for severity in severe) else 0
 
 
-def _checked(files: list[str], stdin_name: str, checker: Checker, problems: list[str]) -> Iterator[Checked]:
-    """Each file that can be read; adds to `problems` what can't."""
-    for number, file in enumerate(files, 1):
-        checker.progress.show(f"{number} of {len(files)}: {file}")
+def _outcomes(files: list[str], settings: Settings) -> Iterable[Outcome]:
+    """What came of each file, in order; many files are shared among all cores."""
+    if len(files) < MANY or STDIN in files:
+        return _check(files, settings)
+    from bandwright.faces.command.parallel import spread
+
+    return spread(_check, files, settings, CHUNK)
+
+
+def _check(files: list[str], settings: Settings) -> Iterator[Outcome]:
+    checker = Checker(settings.today)
+    for file in files:
         try:
             text = decoded(file)
-        except CommandError as problem:
-            problems.append(str(problem))
+        except CommandError as error:
+            yield Outcome(str(error))
             continue
         document = reader.read(text.text, fault=text.fault)
-        yield Checked(stdin_name if file == STDIN else file, document, checker.findings(document))
+        findings = checker.findings(document)
+        name = settings.stdin_name if file == STDIN else file
+        found: tuple[Any, ...]
+        if settings.form == "json":
+            from bandwright.faces.command.formats import check_json
+
+            found = tuple(check_json.record(name, one, checker.offers(document, one)) for one in findings)
+        else:
+            found = tuple(
+                check_text.line(name, one, colour=settings.colour) for one in findings if not one.accepted
+            )
+        kinds = tuple("accepted" if one.accepted else one.severity for one in findings)
+        yield Outcome("", len(document.filters), kinds, found)
 
 
-def _as_text(checked: Iterator[Checked], counts: dict[str, int], *, colour: bool) -> Iterator[str]:
-    """A line for each finding that is not accepted, then the counts."""
-    files = filters = 0
-    for name, document, findings in checked:
-        files += 1
-        filters += len(document.filters)
-        for finding in findings:
-            _count(finding, counts)
-            if not finding.accepted:
-                yield check_text.line(name, finding, colour=colour)
-    yield check_text.count_line(files, filters, counts)
+def _output(form: str, outcomes: list[Outcome], counts: dict[str, int]) -> str:
+    found = [each for outcome in outcomes for each in outcome.found]
+    filters = sum(outcome.filters for outcome in outcomes)
+    if form == "json":
+        from bandwright.faces.command.formats import check_json
 
-
-def _as_json(checked: Iterator[Checked], checker: Checker, counts: dict[str, int]) -> Iterator[str]:
-    """The one JSON document."""
-    from bandwright.faces.command.formats import check_json
-
-    records = []
-    filters = 0
-    for name, document, findings in checked:
-        filters += len(document.filters)
-        for finding in findings:
-            _count(finding, counts)
-            records.append(check_json.record(name, finding, checker.offers(document, finding)))
-    yield check_json.document(records, counts, filters)
-
-
-def _count(finding: Finding, counts: dict[str, int]) -> None:
-    counts["accepted" if finding.accepted else finding.severity] += 1
-
-
-def _write(file: Path, lines: Iterator[str]) -> None:
-    content = "".join(f"{line}\n" for line in lines)
-    try:
-        write_atomically(file, content.encode("utf-8", errors="backslashreplace"))
-    except OSError as error:
-        raise CommandError(f"{file}: can't be written: {error.strerror}") from None
+        return check_json.document(found, counts, filters)
+    files = sum(not outcome.problem for outcome in outcomes)
+    return "\n".join([*found, check_text.count_line(files, filters, counts)]) if files else ""

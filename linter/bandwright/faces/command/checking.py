@@ -18,6 +18,7 @@ from bandwright.exact.answer import answer
 from bandwright.faces.command.error import CommandError
 from bandwright.faces.command.terminal import Progress
 from bandwright.forecast.questions import Answer, Question
+from bandwright.project.files import write_atomically
 from bandwright.project.walk import band_files
 
 STDIN = "-"
@@ -57,6 +58,18 @@ def sought(paths: list[str]) -> tuple[list[str], list[str]]:
             f"There is no band file (*.bands.yaml, *.bands.yml) in {', '.join(paths) or 'this folder'}."
         )
     return files, [f"{path}: there is no such file or folder" for path in missing]
+
+
+def write(file: Path, text: str) -> None:
+    """Replace the content of a file, or make it.
+
+    Raises:
+        CommandError: it can't be written.
+    """
+    try:
+        write_atomically(file, text.encode("utf-8", errors="backslashreplace"))
+    except OSError as error:
+        raise CommandError(f"{file}: can't be written: {error.strerror}") from None
 
 
 def decoded(file: str) -> reader.Decoded:

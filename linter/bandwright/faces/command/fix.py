@@ -14,9 +14,8 @@ from bandwright.bandfile.values import Document
 from bandwright.exact.answer import answer
 from bandwright.faces.command import terminal
 from bandwright.faces.command.arguments import Parser, add_paths, add_today
-from bandwright.faces.command.checking import STDIN, Checker, decoded, sought
+from bandwright.faces.command.checking import STDIN, Checker, decoded, sought, write
 from bandwright.faces.command.error import CommandError
-from bandwright.project.files import write_atomically
 
 NOT_APPLIED, NOT_ALL_DONE = 1, 2
 """Exit statuses."""
@@ -48,17 +47,18 @@ def run(arguments: Namespace) -> int:
             if text.fault is not None:
                 raise CommandError(f"{name}: is not UTF-8 text, so nothing is changed in it")
             mended, titles = _mended(reader.read(text.text), checker)
+            mark = "\ufeff" if text.bom else ""
             if titles and arguments.in_place:
-                _write(Path(file), ("\ufeff" if text.bom else "") + mended)
-        except CommandError as problem:
-            problems.append(str(problem))
+                write(Path(file), mark + mended)
+        except CommandError as error:
+            problems.append(str(error))
             continue
         checker.progress.clear()
         remedies += len(titles)
         for title in titles:
             terminal.say(f"{name}: {title}")
         if not arguments.in_place:
-            sys.stdout.writelines(_diff(name, text.text, mended))
+            sys.stdout.writelines(_diff(name, mark + text.text, mark + mended))
     checker.progress.clear()
     for problem in problems:
         terminal.say(problem)
@@ -70,19 +70,14 @@ def run(arguments: Namespace) -> int:
 
 
 def _mended(document: Document, checker: Checker) -> tuple[str, list[str]]:
-    """The text with every safe remedy applied, and what was applied."""
+    """The text with every safe remedy applied, and what was applied to which filter."""
     text, titles = document.text, []
     for mended, applied in mend(document, checker.answers, answer, checker.memo, checker.today):
         text = mended.text
-        titles += [f"{offer.title} [{finding.id}]" for finding, offer in applied]
+        for finding, offer in applied:
+            where = f"{finding.filter}: " if finding.filter is not None else ""
+            titles.append(f"{where}{offer.title} [{finding.id}]")
     return text, titles
-
-
-def _write(file: Path, text: str) -> None:
-    try:
-        write_atomically(file, text.encode("utf-8"))
-    except OSError as error:
-        raise CommandError(f"{file}: can't be written: {error.strerror}") from None
 
 
 def _diff(name: str, before: str, after: str) -> Iterator[str]:

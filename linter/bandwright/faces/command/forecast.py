@@ -3,17 +3,22 @@
 from __future__ import annotations
 
 from argparse import Namespace
+from collections.abc import Callable, Iterator
 
 from bandwright.bandfile import reader
 from bandwright.bandfile.values import Document, Filter
 from bandwright.exact.answer import answer
+from bandwright.faces import forecast_table
 from bandwright.faces.command import terminal
 from bandwright.faces.command.arguments import Parser, one_of
 from bandwright.faces.command.checking import STDIN, Checker, decoded
 from bandwright.faces.command.error import CommandError
 from bandwright.faces.command.suggestion import suggestion
+from bandwright.forecast import rows
 from bandwright.forecast.forecast import Forecast
-from bandwright.forecast.rows import questions, rows
+from bandwright.forecast.questions import Question
+
+Questions = Callable[[Forecast], Iterator[Question]]
 
 
 def configure(parser: Parser) -> None:
@@ -47,11 +52,16 @@ def run(arguments: Namespace) -> int:
     text = decoded(arguments.file)
     document = reader.read(text.text, fault=text.fault)
     chosen = _chosen(document, arguments.filter, arguments.file)
+    # All figures of all structures are in the JSON; the text shows those of the filter's own structure.
+    questions = forecast_table.questions if arguments.form == "text" else _all_questions
     checker = Checker()
     forecasts = []
     for line, filter in chosen:
         checker.progress.show(filter.name)
-        forecasts.append((line, _forecast(filter, checker, exact=arguments.certainty == "computed")))
+        forecast = Forecast(filter, checker.answers)
+        if arguments.certainty == "computed":
+            forecast = _settled(forecast, questions, checker)
+        forecasts.append((line, forecast))
     checker.progress.clear()
     if arguments.form == "json":
         from bandwright.faces.command.formats import forecast_json
@@ -63,7 +73,7 @@ def run(arguments: Namespace) -> int:
     else:
         from bandwright.faces.command.formats import forecast_text
 
-        terminal.show("\n\n".join(forecast_text.table(one) for _, one in forecasts))
+        terminal.show("\n\n".join(forecast_text.text(one) for _, one in forecasts))
     return 0
 
 
@@ -81,13 +91,13 @@ def _chosen(document: Document, name: str | None, file: str) -> list[tuple[int, 
     return found
 
 
-def _forecast(filter: Filter, checker: Checker, *, exact: bool) -> Forecast:
-    """The forecast, with every question of its table answered where exact figures are wanted."""
-    forecast = Forecast(filter, checker.answers)
-    while exact:
-        asked = [one for one in questions(rows(forecast)) if one not in checker.answers]
-        if not asked:
-            break
+def _all_questions(forecast: Forecast) -> Iterator[Question]:
+    return rows.questions(rows.rows(forecast))
+
+
+def _settled(forecast: Forecast, questions: Questions, checker: Checker) -> Forecast:
+    """The forecast after every question that its figures leave open has been answered."""
+    while asked := [question for question in questions(forecast) if question not in checker.answers]:
         checker.answers.update((question, answer(question)) for question in asked)
-        forecast = Forecast(filter, checker.answers)
+        forecast = Forecast(forecast.filter, checker.answers)
     return forecast

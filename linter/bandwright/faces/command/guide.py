@@ -11,6 +11,7 @@ from bandwright.faces.command import terminal
 from bandwright.faces.command.arguments import Parser
 from bandwright.faces.command.error import CommandError
 from bandwright.faces.command.suggestion import suggestion
+from bandwright.findings.catalogue import RULES
 
 GUIDE = Path(bandwright.__file__).parent / "guide"
 FINDINGS = "findings/"
@@ -44,22 +45,23 @@ def _pages() -> dict[str, Path]:
 
 
 def _page(name: str, pages: dict[str, Path]) -> Path:
-    """The page of this name; of a family or a finding, its last part is enough where no other page has it."""
-    if name in pages:
-        return pages[name]
-    ending = [page for known, page in pages.items() if known.endswith(f"/{name}")]
-    if len(ending) == 1:
-        return ending[0]
-    raise CommandError(f"bandwright guide: there is no page `{name}`; {suggestion(name, pages)}")
+    """The page of this name; its last part is enough where no other page has it."""
+    called = [known for known in pages if name in (known, known.rpartition("/")[2])]
+    if len(called) == 1:
+        return pages[called[0]]
+    if called:
+        raise CommandError(f"bandwright guide: `{name}` may be {' or '.join(called)}.")
+    names = [*pages, *(known.rpartition("/")[2] for known in pages)]
+    near = suggestion(name, names, "`bandwright guide` lists all pages.")
+    raise CommandError(f"bandwright guide: there is no page `{name}`; {near}")
 
 
 def _list(pages: dict[str, Path]) -> Iterator[str]:
+    """A line for each page: a finding with its severity, any other with its title."""
     width = max(map(len, pages), default=0)
     for name, file in pages.items():
-        yield f"{name:<{width}}  {_title(file)}".rstrip()
+        yield f"{name:<{width}}  {RULES[name].severity if name in RULES else _title(file)}"
 
 
 def _title(file: Path) -> str:
-    """The page's heading."""
-    first = file.read_text(encoding="utf-8").split("\n", 1)[0]
-    return first.lstrip("# ")
+    return file.read_text(encoding="utf-8").partition("\n")[0].removeprefix("# ")

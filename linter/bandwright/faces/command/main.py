@@ -85,7 +85,7 @@ def _help() -> str:
         "",
         *(f"  {name:<10}{does}" for name, does in COMMANDS.items()),
         "",
-        "`bandwright COMMAND --help` tells what a command takes, `bandwright --version` the version.",
+        "`bandwright COMMAND --help` tells what a command takes; `--version` the version.",
         "",
         *wrap(CAUTION, 80),
     ]

@@ -26,5 +26,4 @@ def run(arguments: Namespace) -> int:
     """Serve until the client ends; the exit status that the protocol asks for."""
     from bandwright.faces.server.main import serve
 
-    given = {"--tcp": arguments.tcp, "--today": arguments.today}
-    return serve([f"{name}={value}" for name, value in given.items() if value is not None])
+    return serve(tcp=arguments.tcp, today=arguments.today)

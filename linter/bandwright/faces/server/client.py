@@ -7,11 +7,15 @@ from dataclasses import dataclass
 from lsprotocol import types
 from pygls.capabilities import get_capability
 
+from bandwright.faces.server.positions import Encoding, encoding_of
+
 
 @dataclass(frozen=True, slots=True)
 class Client:
     """The client's abilities that make a difference to what is sent."""
 
+    encoding: Encoding = "utf-16"
+    """What columns count."""
     markdown: bool = False
     """In hovers; otherwise plain text."""
     related_places: bool = False
@@ -25,8 +29,8 @@ class Client:
     """Code actions may carry edits; without this only commands could be offered."""
 
 
-def client_of(capabilities: types.ClientCapabilities) -> Client:
-    """The abilities that a client announces."""
+def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Client:
+    """The abilities that a client announces, with the encoding that was agreed on."""
 
     def says(name: str) -> bool:
         return bool(get_capability(capabilities, name, False))
@@ -36,6 +40,7 @@ def client_of(capabilities: types.ClientCapabilities) -> Client:
     lazy = get_capability(capabilities, "text_document.code_action.resolve_support.properties", None) or []
     versioned = says("workspace.workspace_edit.document_changes")
     return Client(
+        encoding=encoding_of(encoding),
         markdown=bool(formats) and formats[0] == types.MarkupKind.Markdown,
         related_places=says("text_document.publish_diagnostics.related_information"),
         tags=frozenset(int(tag) for tag in tags),

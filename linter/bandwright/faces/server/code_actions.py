@@ -24,8 +24,6 @@ from bandwright.forecast.questions import Answer, Question
 QUICK_FIX = types.CodeActionKind.QuickFix.value
 FIX_ALL = "source.fixAll.bandwright"
 
-OPTIONS = types.CodeActionOptions(code_action_kinds=[QUICK_FIX, FIX_ALL], resolve_provider=True)
-
 _ANNOTATION = "changes-requirement"
 
 Action = dict[str, Any]

@@ -8,13 +8,15 @@ from lsprotocol import types
 
 from bandwright.analysis.types import Finding
 from bandwright.bandfile import grammar
-from bandwright.bandfile.values import Document, Quantity
+from bandwright.bandfile.values import Document, Filter, Path, Quantity
+from bandwright.faces import forecast_table
+from bandwright.faces.markdown import Link, Part, render
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.guide import guide_uri
-from bandwright.faces.server.hovers import arithmetic, device, edge, forecast, key, level, rate, structure
-from bandwright.faces.server.markdown import Link, Part, render
+from bandwright.faces.server.hovers import arithmetic, device, edge, key, level, rate, relaxing, structure
 from bandwright.faces.server.session import OpenFile, Session
 from bandwright.faces.server.tokens import Token, token_at
+from bandwright.findings.catalogue import RULES
 from bandwright.forecast.forecast import Forecast
 
 EDGES = ("from", "to")
@@ -42,47 +44,67 @@ async def hover(session: Session, client: Client, params: types.HoverParams) -> 
 
 
 def _about(session: Session, file: OpenFile, document: Document, token: Token) -> list[Part]:
-    """What the token itself calls for."""
+    """What the token itself calls for; its key's meaning where nothing more is known."""
     if token.block.kind == "device" and not token.path:
         return device.parts(document, token.block)
-    name = token.path[0] if token.path else ""
-    shows_forecast = (
-        not token.path or name in ("family", "order") or (name == "at_most" and token.part == "value")
-    )
-    if token.filter is not None and (shows_forecast or token.part == "value"):
-        filter, aged = token.filter, False
-        if not token.block.whole and filter.name in file.last_good:
-            filter, aged = file.last_good[filter.name].filter, True
-        known = Forecast(filter, session.answers.kept)
-        parts = forecast.parts(known) if shows_forecast else _value(document, token, known)
-        if shows_forecast:
-            session.want(file, forecast.questions(known))
-        if parts:
-            return [*parts, "As it was before the last edit, which can't be read yet."] if aged else parts
+    filter, aged = _filter(file, token)
+    known = Forecast(filter, session.answers.kept)
+    parts: list[Part] = []
+    if token.block.kind == "filter" and _shows_forecast(token):
+        parts = [*forecast_table.parts(known), *_meanings(token.path, filter)]
+        session.want(file, forecast_table.questions(known))
+    elif token.part == "value" and token.path:
+        parts = _value(document, token.path, known)
+        if token.path[0] == "bands" and known.mask is not None and known.mask.phase == "linear":
+            session.want(file, relaxing.questions(known, token.path))
+    if parts:
+        return [*parts, "As it was before the last edit, which can't be read yet."] if aged else parts
     described = grammar.key(token.block.kind, token.path)
     return key.parts(described) if described is not None else []
 
 
-def _value(document: Document, token: Token, known: Forecast) -> list[Part]:
-    """What a value of a filter means; nothing where only its key tells."""
-    path, filter = token.path, known.filter
-    quantity = filter.quantity(*path)
-    if path[0] == "bands" and isinstance(quantity, Quantity):
-        if path[-1] in EDGES:
+def _filter(file: OpenFile, token: Token) -> tuple[Filter, bool]:
+    """The filter to show figures of, and whether it is of an earlier version that could be read."""
+    if token.filter is None:
+        return Filter(token.block.name, token.block.own), False
+    last_good = file.last_good.get(token.filter.name)
+    if token.block.whole or last_good is None:
+        return token.filter, False
+    return last_good.filter, True
+
+
+def _shows_forecast(token: Token) -> bool:
+    if not token.path or token.path[0] in ("family", "order"):
+        return True
+    return token.path[0] == "at_most" and token.part == "value"
+
+
+def _meanings(path: Path, filter: Filter) -> list[Part]:
+    """What the families are that were asked for, where these were pointed at."""
+    names = filter.names("family") or () if path[:1] == ("family",) else ()
+    return [f"`{name}`: {grammar.FAMILIES[name]}" for name in names if name in grammar.FAMILIES]
+
+
+def _value(document: Document, path: Path, known: Forecast) -> list[Part]:
+    """What a value means by itself; nothing where only its key tells."""
+    setting = known.filter.get(*path) or known.filter.get(*path[:-1])
+    match path[0], setting.value if setting is not None else None:
+        case "bands", Quantity() as quantity if path[-1] in EDGES:
             return edge.parts(known, path, quantity)
-        return level.parts(known, path, quantity) if path[-1] in LEVELS else []
-    if path == ("sample_rate",) and quantity is not None:
-        return rate.parts(quantity)
-    names = filter.names(path[0]) if path[0] == "structure" else None
-    if names:
-        at = path[1] if len(path) > 1 and isinstance(path[1], int) else 0
-        return structure.parts(known, names[min(at, len(names) - 1)])
-    written = filter.text(*path)
-    if path[0] == "arithmetic" and written is not None:
-        return arithmetic.parts(known, written)
-    if path == ("device",):
-        named = next((one for one in document.blocks if one.kind == "device" and one.name == written), None)
-        return device.parts(document, named) if named is not None else []
+        case "bands", Quantity() as quantity if path[-1] in LEVELS:
+            return level.parts(known, path, quantity)
+        case "sample_rate", Quantity() as quantity:
+            return rate.parts(quantity)
+        case "structure", (str(), *_) as names:
+            at = path[-1] if isinstance(path[-1], int) else 0
+            return structure.parts(known, str(names[at]))
+        case "arithmetic", str(name):
+            return arithmetic.parts(known, name)
+        case "device", str(name):
+            named = (one for one in document.blocks if one.kind == "device" and one.name == name)
+            return [part for block in named for part in device.parts(document, block)]
+        case "accepted", str(id) if id in RULES and path[-1] == "finding":
+            return [f"`{id}`, {RULES[id].severity}", *_page(id)]
     return []
 
 
@@ -91,8 +113,10 @@ def _of_findings(findings: list[Finding]) -> list[Part]:
     parts: list[Part] = []
     for one in findings:
         state = "accepted" if one.accepted else one.severity
-        parts.append(f"{state} `{one.id}`: {one.message}")
-        page = guide_uri(one.id)
-        if page is not None:
-            parts.append(Link(f"About {one.id}", page))
+        parts += [f"{state} `{one.id}`: {one.message}", *_page(one.id)]
     return parts
+
+
+def _page(id: str) -> list[Part]:
+    page = guide_uri(id)
+    return [Link(f"About {id}", page)] if page is not None else []

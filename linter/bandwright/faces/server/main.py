@@ -4,14 +4,11 @@ from __future__ import annotations
 
 import asyncio
 import logging
-import os
 import sys
 import time
 
 from bandwright.faces.server import transport
 from bandwright.faces.server.server import Server
-
-PARENT_LOOKED_FOR_EVERY_S = 1.0
 
 BAD_ADDRESS = 2
 """Exit status where it can't listen."""
@@ -19,10 +16,12 @@ BAD_ADDRESS = 2
 LOOPBACK = ("127.0.0.1", "localhost", "::1")
 
 
-def serve(tcp: str | None = None) -> int:
+def serve(tcp: str | None = None, today: str | None = None) -> int:
     """Serve one client over standard input and output until it leaves, and return the exit status.
 
-    `tcp`, as HOST:PORT, listens there instead; it must be a loopback address.
+    Args:
+        tcp: HOST:PORT to listen on instead; it must be a loopback address.
+        today: the date as YYYY-MM-DD by which accepted findings are judged, if not by the day it is (UTC).
 
     Returns:
         0 after an orderly end; 1 where the client left without `shutdown`; 2 for an address that won't do.
@@ -38,19 +37,19 @@ def serve(tcp: str | None = None) -> int:
     # What matters is told to the client; standard error would show it a second time.
     logging.getLogger("pygls").setLevel(logging.CRITICAL)
     try:
-        return asyncio.run(_run(address))
+        return asyncio.run(_run(address, today))
     except KeyboardInterrupt:
         return 130
 
 
-async def _run(address: tuple[str, int] | None) -> int:
+async def _run(address: tuple[str, int] | None, today: str | None) -> int:
     status: asyncio.Future[int] = asyncio.get_running_loop().create_future()
 
     def finish(code: int) -> None:
         if not status.done():
             status.set_result(code)
 
-    server = Server(_today, finish)
+    server = Server(lambda: today or time.strftime("%Y-%m-%d", time.gmtime()), finish)
     asyncio.get_running_loop().set_exception_handler(lambda loop, context: server.loop_failed(context))
     if address is None:
         server.protocol.set_writer(transport.Writer(transport.claim_stdout()))
@@ -62,36 +61,4 @@ async def _run(address: tuple[str, int] | None) -> int:
             return server.protocol.receive
 
         await transport.listen(*address, connected, server.client_left)
-    watch = asyncio.create_task(_watch_parent(server))
-    try:
-        return await status
-    finally:
-        watch.cancel()
-
-
-def _today() -> str:
-    return time.strftime("%Y-%m-%d", time.gmtime())
-
-
-async def _watch_parent(server: Server) -> None:
-    """End when the editor's process is gone, even if somebody else holds our standard input open."""
-    while not server.initialized:
-        await asyncio.sleep(PARENT_LOOKED_FOR_EVERY_S)
-    # An editor in another container names a process that was never there for us.
-    if server.process_id is None or not _is_alive(server.process_id):
-        return
-    while _is_alive(server.process_id):
-        await asyncio.sleep(PARENT_LOOKED_FOR_EVERY_S)
-    server.client_left()
-
-
-def _is_alive(process: int) -> bool:
-    if os.name != "posix" or process <= 0:  # elsewhere signal 0 is no question; the end of input has to do
-        return True
-    try:
-        os.kill(process, 0)
-    except ProcessLookupError:
-        return False
-    except PermissionError:
-        return True
-    return True
+    return await status

@@ -16,8 +16,6 @@ from bandwright.bandfile.values import Span
 
 Encoding = Literal["utf-8", "utf-16", "utf-32"]
 
-BYTE_ORDER_MARK = "\ufeff"
-
 _LINE_END = re.compile(r"\r\n|\n|\r")
 
 
@@ -36,16 +34,13 @@ def lines_of(text: str) -> list[str]:
 
 
 class LineIndex:
-    """The lines of one text, and the way between its positions and a client's.
-
-    A byte-order mark at the start is a character to the client, while the core never sees it.
-    """
+    """The lines of one text, and the way between its positions and a client's."""
 
     def __init__(self, text: str, encoding: Encoding) -> None:
         self._text = text
         self._encoding = encoding
         # Where a code point is one unit in every encoding, columns need no conversion.
-        self._plain = text.isascii() or (encoding == "utf-32" and not text.startswith(BYTE_ORDER_MARK))
+        self._plain = encoding == "utf-32" or text.isascii()
         self._starts: list[int] | None = None
         self._ends: list[int] = []
 
@@ -77,25 +72,21 @@ class LineIndex:
         """Line and column in code points; beyond the end of a line or the text, that end."""
         last = len(self._index()) - 1
         if position.line > last:
-            return last, len(self.line(last)) - self._lead(last)
+            return last, len(self.line(last))
         number, character = position.line, position.character
         line = self.line(number)
         if self._plain:
             return number, min(character, len(line))
-        return number, max(_code_points(line, character, self._encoding) - self._lead(number), 0)
+        return number, _code_points(line, character, self._encoding)
 
     def span(self, wanted: types.Range) -> Span:
         """The span of a client's range."""
         return Span(*self.place(wanted.start), *self.place(wanted.end))
 
-    def _lead(self, number: int) -> int:
-        """Characters of a line that only the client sees."""
-        return 1 if number == 0 and self._text.startswith(BYTE_ORDER_MARK) else 0
-
     def _units(self, number: int, column: int) -> int:
         if self._plain:
             return column
-        return _size(self.line(number)[: column + self._lead(number)], self._encoding)
+        return _size(self.line(number)[:column], self._encoding)
 
 
 def _size(text: str, encoding: Encoding) -> int:

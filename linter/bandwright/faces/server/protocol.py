@@ -159,9 +159,12 @@ class Protocol(LanguageServerProtocol):
 
     def send(self, message: Message) -> None:
         """Send a message that is plain JSON already."""
+        self.send_text(json.dumps(message, separators=(",", ":")))
+
+    def send_text(self, text: str) -> None:
+        """Send a message that is JSON text already, in ASCII."""
         if self.writer is not None:
-            body = json.dumps(message, separators=(",", ":")).encode()
-            self.writer.write(b"Content-Length: %d\r\n\r\n%b" % (len(body), body))
+            self.writer.write(b"Content-Length: %d\r\n\r\n%b" % (len(text), text.encode("ascii")))
 
     def tell(self, method: str, params: Message) -> None:
         """Send a notification that is plain JSON already."""

@@ -1,38 +1,38 @@
-"""The server: the session, the features that look into it, and the client at the other end."""
+"""The server as its client sees it: how it starts, what it offers, how it fails and ends."""
 
 from __future__ import annotations
 
+import asyncio
 import traceback
 from collections.abc import Awaitable, Callable
+from functools import cached_property
 from importlib.metadata import version
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from lsprotocol import types
 from pygls.lsp.server import LanguageServer
 
-from bandwright.analysis.types import Finding
-from bandwright.faces.server import code_actions, hover, text_sync
+from bandwright.faces.server import parent
 from bandwright.faces.server.client import Client, client_of
-from bandwright.faces.server.diagnostics import diagnostics
-from bandwright.faces.server.positions import encoding_of
 from bandwright.faces.server.protocol import Protocol
-from bandwright.faces.server.session import OpenFile, Session
 
-Feature = Callable[[Session, Client, Any], Awaitable[Any]]
-"""Answers a request from the session, in the form that the client can take."""
+if TYPE_CHECKING:
+    from bandwright.faces.server.features import Features
 
-FEATURES: dict[str, tuple[Feature, Any]] = {
-    types.TEXT_DOCUMENT_HOVER: (hover.hover, None),
-    types.TEXT_DOCUMENT_CODE_ACTION: (code_actions.code_actions, code_actions.OPTIONS),
-    types.CODE_ACTION_RESOLVE: (code_actions.resolve, None),
+REQUESTS: dict[str, Any] = {
+    types.TEXT_DOCUMENT_HOVER: None,
+    types.TEXT_DOCUMENT_CODE_ACTION: types.CodeActionOptions(
+        code_action_kinds=[types.CodeActionKind.QuickFix, "source.fixAll.bandwright"], resolve_provider=True
+    ),
+    types.CODE_ACTION_RESOLVE: None,
 }
-"""The requests, each with what answers it and the options that are announced."""
+"""The requests that `features` answers, with the options that are announced."""
 
-NOTIFICATIONS: dict[str, Callable[[Session, Any], None]] = {
-    types.TEXT_DOCUMENT_DID_OPEN: text_sync.did_open,
-    types.TEXT_DOCUMENT_DID_CHANGE: text_sync.did_change,
-    types.TEXT_DOCUMENT_DID_CLOSE: text_sync.did_close,
-}
+NOTIFICATIONS = (
+    types.TEXT_DOCUMENT_DID_OPEN,
+    types.TEXT_DOCUMENT_DID_CHANGE,
+    types.TEXT_DOCUMENT_DID_CLOSE,
+)
 
 WARM_UP: tuple[tuple[str, dict[str, Any]], ...] = (
     (types.TEXT_DOCUMENT_DID_OPEN, {"textDocument": {"uri": "", "languageId": "", "version": 0, "text": ""}}),
@@ -45,7 +45,7 @@ WARM_UP: tuple[tuple[str, dict[str, Any]], ...] = (
 
 
 class Server(LanguageServer):
-    """The server of pygls with its own protocol, and one session."""
+    """The server of pygls with its own protocol."""
 
     protocol: Protocol
 
@@ -58,63 +58,54 @@ class Server(LanguageServer):
             protocol_cls=Protocol,
         )
         self.client = Client()
-        self.session = Session(self._publish, self.failed, today)
-        self.initialized = False
+        self._today = today
         self._finish = finish
-        self._register()
+        for method, options in REQUESTS.items():
+            self.feature(method, options)(self._request(method))
+        for method in NOTIFICATIONS:
+            self.feature(method)(self._notification(method))
+        self.feature(types.INITIALIZE)(self._initialize())
+        self.feature(types.EXIT)(self._exit())
 
-    def _register(self) -> None:
-        for method, (feature, options) in FEATURES.items():
-            self.feature(method, options)(self._guarded(method, feature))
-        for method, take in NOTIFICATIONS.items():
-            self.feature(method)(self._guarded_notification(method, take))
+    @cached_property
+    def features(self) -> Features:
+        """The features, loaded at the first use: the client need not wait for them to be greeted."""
+        from bandwright.faces.server.features import Features
 
-        @self.feature(types.EXIT)
-        def leave(params: object) -> None:
-            self.client_left()
+        return Features(self.client, self.protocol.send_text, self.failed, self._today)
 
-        @self.feature(types.INITIALIZE)
-        def initialize(params: types.InitializeParams) -> None:
-            self.client = client_of(params.capabilities)
-            self.session.encoding = encoding_of(self.protocol.workspace.position_encoding)
-            self.initialized = True
-
-        @self.feature(types.INITIALIZED)
-        def initialized(params: types.InitializedParams) -> None:
-            for method, example in WARM_UP:
-                self.protocol.structure({"jsonrpc": "2.0", "method": method, "params": example})
-
-    def _guarded(self, method: str, feature: Feature) -> Callable[[Any], Awaitable[Any]]:
-        """The feature, answering nothing where it has a defect, which the client's log tells."""
-
-        async def answer(params: Any) -> Any:
-            try:
-                return await feature(self.session, self.client, params)
-            except Exception as error:
-                self.failed(method, error)
-                return None
-
-        return answer
-
-    def _guarded_notification(
-        self, method: str, take: Callable[[Session, Any], None]
-    ) -> Callable[[Any], None]:
-        def handle(params: Any) -> None:
-            try:
-                take(self.session, params)
-            except Exception as error:
-                self.failed(method, error)
+    def _request(self, method: str) -> Callable[[Any], Awaitable[Any]]:
+        async def handle(params: Any) -> Any:
+            return await self.features.answer(method, params)
 
         return handle
 
-    def _publish(self, file: OpenFile, findings: tuple[Finding, ...]) -> None:
-        params: dict[str, Any] = {
-            "uri": file.uri,
-            "diagnostics": diagnostics(findings, file.uri, self.session.lines(file), self.client),
-        }
-        if file.version is not None:
-            params["version"] = file.version
-        self.protocol.tell(types.TEXT_DOCUMENT_PUBLISH_DIAGNOSTICS, params)
+    def _notification(self, method: str) -> Callable[[Any], None]:
+        def handle(params: Any) -> None:
+            self.features.take(method, params)
+
+        return handle
+
+    def _initialize(self) -> Callable[[types.InitializeParams], None]:
+        def handle(params: types.InitializeParams) -> None:
+            loop = asyncio.get_running_loop()
+            self.client = client_of(params.capabilities, self.protocol.workspace.position_encoding)
+            self._watch = loop.create_task(self._leave_with(params.process_id))
+            loop.call_soon(self._warm_up)
+
+        return handle
+
+    def _exit(self) -> Callable[[None], None]:
+        def handle(params: None) -> None:
+            self.client_left()
+
+        return handle
+
+    def _warm_up(self) -> None:
+        """Do what takes long the first time, while the client reads the answer to `initialize`."""
+        assert self.features
+        for method, example in WARM_UP:
+            self.protocol.structure({"jsonrpc": "2.0", "method": method, "params": example})
 
     def failed(self, where: str, error: Exception) -> None:
         """Tell the client's log of a defect, once for each."""
@@ -130,6 +121,10 @@ class Server(LanguageServer):
     def report_server_error(self, error: Exception, source: object) -> None:
         """Log what pygls would pop up."""
         self.failed("the protocol", error)
+
+    async def _leave_with(self, editor: int | None) -> None:
+        await parent.gone(editor)
+        self.client_left()
 
     def client_left(self) -> None:
         """End the process: with 0 if the client had said `shutdown`, else with 1."""

@@ -10,15 +10,15 @@ from __future__ import annotations
 import asyncio
 import time
 from collections.abc import Callable, Iterable, Iterator
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 
 from bandwright.analysis.analyse import Memo, analyse_filter
-from bandwright.analysis.present import present
+from bandwright.analysis.present import in_order, of_block
 from bandwright.analysis.types import Analysis, Finding
 from bandwright.bandfile.reader import read
 from bandwright.bandfile.values import Document, Filter
 from bandwright.faces.server.answers import Answers, Lookups
-from bandwright.faces.server.positions import BYTE_ORDER_MARK, Encoding, LineIndex
+from bandwright.faces.server.positions import Encoding, LineIndex
 from bandwright.forecast.questions import Answer, Question
 
 SLICE_S = 0.005
@@ -42,6 +42,8 @@ class OpenFile:
     lines: LineIndex | None = None
     analyses: dict[int, Analysis] = field(default_factory=dict)
     """By index of the block, for the document and, until they are carried over, for the one before."""
+    presented: dict[int, tuple[object, tuple[Finding, ...]]] = field(default_factory=dict)
+    """By index of the block: its findings, and before them all that they depend on."""
     findings: tuple[Finding, ...] | None = None
     """All that is settled for this version; None until everything was analysed once."""
     last_good: dict[str, Analysis] = field(default_factory=dict)
@@ -51,8 +53,8 @@ class OpenFile:
     task: asyncio.Task[None] | None = None
     analysed: asyncio.Event = field(default_factory=asyncio.Event)
     """Set while `findings` is there."""
-    is_published: bool = False
-    """Whether this version was published."""
+    shown: tuple[Finding, ...] | None = None
+    """What was published for this version, None while nothing was."""
 
 
 class Session:
@@ -60,15 +62,16 @@ class Session:
 
     def __init__(
         self,
+        encoding: Encoding,
         publish: Callable[[OpenFile, tuple[Finding, ...]], None],
         failed: Callable[[str, Exception], None],
         today: Callable[[], str],
     ) -> None:
-        """`publish` is called with all findings of a file when they change; `failed` is told of defects."""
-        self.encoding: Encoding = "utf-16"
+        """`publish` gets the problems of a file whenever they change, `failed` every defect."""
         self.files: dict[str, OpenFile] = {}
         self.answers = Answers()
         self.memo = Memo()
+        self._encoding = encoding
         self._publish = publish
         self._failed = failed
         self.today = today
@@ -90,7 +93,7 @@ class Session:
             file.before = file.document
         file.version, file.text = version, text
         file.document = file.lines = file.findings = None
-        file.is_published = False
+        file.shown = None
         file.wanted.clear()
         file.analysed.clear()
         self._last_edit_s = time.monotonic()
@@ -100,13 +103,14 @@ class Session:
         """Let go of a file and clear its findings."""
         file = self._forget(uri)
         if file is not None:
-            file.version, file.findings = None, ()
+            file.version = None
             self._publish(file, ())
 
     def _forget(self, uri: str) -> OpenFile | None:
         file = self.files.pop(uri, None)
         if file is not None:
             self._stop(file)
+            file.findings = ()
             file.analysed.set()
         return file
 
@@ -121,14 +125,14 @@ class Session:
     def read(self, file: OpenFile) -> Document:
         """The file's document, read from its present text."""
         if file.document is None:
-            file.document = read(file.text.removeprefix(BYTE_ORDER_MARK), file.before)
+            file.document = read(file.text, file.before)
             self._carry_over(file, file.document)
         return file.document
 
     def lines(self, file: OpenFile) -> LineIndex:
         """The lines of the file's present text."""
         if file.lines is None:
-            file.lines = LineIndex(file.text, self.encoding)
+            file.lines = LineIndex(file.text, self._encoding)
         return file.lines
 
     def analysis(self, file: OpenFile, block: int, filter: Filter) -> Analysis:
@@ -200,7 +204,7 @@ class Session:
         for done, (block, filter) in enumerate(ordered, 1):
             self.analysis(file, block, filter)
             if time.monotonic() - started > SLICE_S and done < len(ordered):
-                if file.findings is None and not file.is_published:
+                if file.shown is None:
                     self._show(file, self._present(file, document))
                 await asyncio.sleep(0)
                 started = time.monotonic()
@@ -210,20 +214,32 @@ class Session:
             for block, filter in document.filters
             if document.blocks[block].whole or filter.name in file.last_good
         }
-        if findings != file.findings:
-            file.findings = findings
-            self._show(file, findings)
+        file.findings = findings
         file.analysed.set()
+        self._show(file, findings)
 
     def _present(self, file: OpenFile, document: Document) -> tuple[Finding, ...]:
-        """The findings of the filters that are analysed by now."""
-        done = tuple(each for each in document.filters if each[0] in file.analyses)
-        analyses = [file.analyses[block] for block, _ in done]
-        return present(replace(document, filters=done), analyses, self.today())
+        """The findings of what is analysed by now; the very same ones where nothing has changed."""
+        filters, today = dict(document.filters), self.today()
+        devices = tuple((one.first_line, one.text) for one in document.blocks if one.kind == "device")
+        presented: dict[int, tuple[object, tuple[Finding, ...]]] = {}
+        for index, block in enumerate(document.blocks):
+            analysis = file.analyses.get(index)
+            depends_on = (block.first_line, block.text, block.faults, analysis, devices, today)
+            known = file.presented.get(index)
+            if known is None or known[0] != depends_on:
+                findings = of_block(document, index, filters.get(index), analysis, today)
+                known = depends_on, tuple(findings)
+            presented[index] = known
+        file.presented = presented
+        return in_order(finding for _, findings in presented.values() for finding in findings)
 
     def _show(self, file: OpenFile, findings: tuple[Finding, ...]) -> None:
-        file.is_published = True
-        self._publish(file, findings)
+        """Publish what is not accepted, unless that is on show already."""
+        problems = tuple(finding for finding in findings if not finding.accepted)
+        if problems != file.shown:
+            file.shown = problems
+            self._publish(file, problems)
 
     async def _answer_next(self, file: OpenFile) -> bool:
         """Wait for a pause, then answer one open question of the file; False where there is none."""

@@ -6,6 +6,7 @@ from bisect import bisect_right
 from dataclasses import dataclass
 from typing import Literal
 
+from bandwright.bandfile.blocks import in_document
 from bandwright.bandfile.values import Block, Document, Filter, Path, Span
 
 
@@ -35,18 +36,16 @@ def token_at(document: Document, line: int, column: int) -> Token | None:
 
 def _in_block(document: Document, index: int, line: int, column: int) -> Token | None:
     block = document.blocks[index]
-    here = (line - block.first_line, column)
-    best: tuple[Path, Literal["key", "value"], Span] | None = None
+    containers = {path[:-1] for path in block.marks if path}
     for path, marks in block.marks.items():
-        parts: tuple[tuple[Literal["key", "value"], Span], ...] = (("key", marks.key), ("value", marks.value))
-        for part, span in parts:
-            is_here = span[:2] <= here <= span[2:] and span[:2] != span[2:]
-            if is_here and (best is None or (span[:2] >= best[2][:2] and span[2:] <= best[2][2:])):
-                best = path, part, span
-    if best is None:
-        return None
-    path, part, span = best
-    shifted = Span(
-        span.line + block.first_line, span.column, span.end_line + block.first_line, span.end_column
-    )
-    return Token(block, index, dict(document.filters).get(index), path, part, shifted)
+        # An item of a list has no key, and what holds entries is told by these.
+        spans: list[tuple[Literal["key", "value"], Span]] = []
+        if not path or isinstance(path[-1], str):
+            spans.append(("key", marks.key))
+        if path not in containers:
+            spans.append(("value", marks.value))
+        for part, within in spans:
+            span = in_document(document, block, within)
+            if span[:2] <= (line, column) <= span[2:] and span[:2] != span[2:]:
+                return Token(block, index, dict(document.filters).get(index), path, part, span)
+    return None

@@ -6,10 +6,14 @@ import asyncio
 import os
 import sys
 import threading
+import time
 from collections.abc import Callable, Iterator
 
 Receive = Callable[[bytes], None]
 """Takes the body of one message."""
+
+LAST_WORDS_S = 10.0
+"""How long a loop that hangs is left alone after the end of input; then the process is ended regardless."""
 
 _READ_BYTES = 65_536
 
@@ -96,6 +100,8 @@ def read_stdin(receive: Receive, ended: Callable[[], None]) -> None:
             loop.call_soon_threadsafe(ended)
         except RuntimeError:  # the loop was closed meanwhile
             return
+        time.sleep(LAST_WORDS_S)
+        os._exit(1)
 
     threading.Thread(target=read, name="stdin", daemon=True).start()
 

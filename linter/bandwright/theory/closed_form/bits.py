@@ -1,25 +1,28 @@
 """How many bits the coefficients of a filter need, predicted before any of them is rounded.
 
-For recursive filters the figure is the least word (sign included) or mantissa at which nine of ten roundings keep
-the mask and stay stable. Rounding errors e_k count as independent and uniform over one step (Knowles, Olcayto 1968;
-Avenhaus 1972; Crochiere, Oppenheim 1975: from memory) and change the response to first order by
+For recursive filters the figure is the least word (sign included) or mantissa at which nine of ten
+roundings keep the mask and the filter stable. Rounding errors e_k count as independent and uniform over
+one step (Knowles, Olcayto 1968; Avenhaus 1972; Crochiere, Oppenheim 1975: from memory) and change the
+response to first order by
 
     d ln|H|(w) = sum_k Re(e_k z^-k / B) - sum_k Re(e_k z^-k / A),      z = e^jw.
 
-A pass band asks for the change between two frequencies, so its variance is taken over the errors that both share:
-in a narrow band they nearly cancel. A condition with deviation s 2^-bits and margin m needs log2(s / m) + ODDS bits.
-All of it comes from poles and zeros, never from expanded polynomials, which doubles can't hold, and is evaluated
-over v = sin^2(w/2), in which ln|H| is smooth at both ends of the axis.
+A pass band asks for the change between two frequencies, so its variance is taken over the errors that both
+share: in a narrow band they nearly cancel. A condition with deviation s 2^-bits and margin m needs
+log2(s / m) + ODDS bits. All of it comes from poles and zeros, never from expanded polynomials, which doubles
+can't hold, and is evaluated over v = sin^2(w/2), in which ln|H| is smooth at both ends of the axis.
 """
 
 from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
+from itertools import pairwise
 from typing import Literal, NamedTuple
 
+from bandwright.theory.closed_form import fir_length, polynomials
 from bandwright.theory.closed_form.types import Design, Mask, MaskBand, Root
 
 NumberFormat = Literal["fixed", "floating"]
@@ -27,34 +30,39 @@ NumberFormat = Literal["fixed", "floating"]
 LEAST_BITS = 2
 
 ODDS = 0.63
-"""Bits from a deviation as large as the margin to nine successes in ten. Fitted, as ERROR is."""
+"""Bits from a deviation as large as the margin to nine successes in ten; fitted, as the two below are."""
 
-ERROR = 0.7
-"""Bits by which a prediction may err on either side."""
+BELOW = 1.0
+"""Bits by which the true figure may lie below the prediction before it is rounded up."""
 
-LUCK = 1
-"""Bits more where plain rounding does worse than nine random roundings in ten."""
+ABOVE = 2.7
+"""And above it: plain rounding may do worse than nine random roundings in ten."""
 
-NO_MARGIN = 1e-6
+NO_MARGIN = 1e-5
 """A margin below this share of its window is none: the last digits of the design decide."""
+
+FIR_ODDS = {"fixed": 1.0, "floating": 0.3}
+"""ODDS, BELOW and ABOVE for taps: the least word of a single filter is luck, as few taps decide."""
+FIR_BELOW = {"fixed": 3.5, "floating": 4.5}
+FIR_ABOVE = {"fixed": 2.6, "floating": 3.0}
 
 _NEPERS = math.log(10.0) / 20.0
 _LN_4 = math.log(4.0)
 _SMOOTH = 0.1
 """Share of its window by which a cubic may miss ln|H| before an interval is halved."""
 _HALVINGS = 24
-_NONE = 1e-13
+_LOST = 1e-13
 """A coefficient below this share of the greatest is 0, or is lost without harm."""
 
 
 @dataclass(frozen=True, slots=True)
 class Prediction:
-    """Bits that a coefficient needs: the word with its sign if `fixed`, the significant bits if `floating`."""
+    """Bits that a coefficient needs: a word with its sign if `fixed`, significant bits if `floating`."""
 
     value: int
     low: int
     high: float
-    """The true figure lies within `low`..`high`; infinite where the design has no margin left in the mask."""
+    """The true figure lies within `low`..`high`; infinite where the design may have no margin in the mask."""
     real: float
     """The figure before it is rounded up."""
 
@@ -73,17 +81,20 @@ class Scatter:
 def direct_form_bits(design: Design, mask: Mask, number_format: NumberFormat) -> Prediction | None:
     """Bits for the coefficients of a direct form: I or II, transposed or not, they are the same.
 
-    `fixed`: a1..an share the least power of two above them all; so do b0..bn, once the highest gain of the pass
-    bands is scaled to 1. Zeros must lie on the unit circle. None where the design itself breaks the mask.
+    `fixed`: a1..an share the least power of two above them all; so do b0..bn, once the highest gain of
+    the pass bands is scaled to 1. None where the design itself breaks the mask. Raises ValueError where a
+    zero lies off the unit circle.
     """
     survey = _survey(design, mask)
-    numerator, denominator = coefficients(design)
-    a_steps = _steps(denominator[1:], number_format)
-    b_steps = _steps([value * math.exp(-survey.peak) for value in numerator], number_format)
+    gain = math.exp(design.log_gain - survey.peak)
+    numerator = [gain * value for value in polynomials.expanded(survey.design.zeros)]
+    a_steps = _steps(polynomials.expanded(survey.design.poles)[1:], number_format)
     lags = range(1, len(a_steps) + 1)
-    arms = _arms(len(numerator))
-    b_steps = [step if arm == 0.0 else 2.0 * step for step, arm in zip(b_steps, arms, strict=False)]
-    wave = math.sin if _zeros_at_one(design) % 2 else math.cos
+    arms, wave = _symmetry(survey.design)
+    b_steps = [
+        step if arm == 0.0 else 2.0 * step
+        for step, arm in zip(_steps(numerator, number_format), arms, strict=False)
+    ]
 
     def changes(v: float, _: float) -> _Changes:
         w = 2.0 * math.asin(math.sqrt(v))
@@ -96,21 +107,21 @@ def direct_form_bits(design: Design, mask: Mask, number_format: NumberFormat) ->
 
     total = math.hypot(*a_steps)
     unstable = [total * abs(_inverse(survey.sections, _v(w), w)) for w in survey.unguarded]
-    return _prediction(mask, survey, changes, unstable)
+    return _prediction(survey, changes, unstable)
 
 
 def cascade_bits(design: Design, mask: Mask, number_format: NumberFormat) -> Prediction | None:
     """Bits for the coefficients of second-order sections (1 + b1/z + 1/z^2) / (1 + a1/z + a2/z^2).
 
-    `fixed`: the step is 2^(2-W), as a1 and b1 reach 2. Coefficients 0, +-1, +-2 cost nothing, so zeros at z = +-1
-    don't either. Gains between the sections are not counted. Zeros must lie on the unit circle. None where the
-    design itself breaks the mask.
+    `fixed`: the step is 2^(2-W), as a1 and b1 reach 2. Coefficients 0, +-1 and +-2 cost nothing, so zeros at
+    z = +-1 don't either. Gains between the sections are not counted. None where the design itself breaks the
+    mask. Raises ValueError where a zero lies off the unit circle.
     """
     survey = _survey(design, mask)
     poles = [(*section, *_steps((section.a1, section.a2), number_format, 1)) for section in survey.sections]
     zeros = [
         (_v(root.angle), *_steps((-2.0 * math.cos(root.angle),), number_format, 1))
-        for root in design.zeros
+        for root in survey.design.zeros
         if root.pair
     ]
 
@@ -119,11 +130,11 @@ def cascade_bits(design: Design, mask: Mask, number_format: NumberFormat) -> Pre
         of_a = []
         for _, a2, at_dc, gap, _, step1, step2 in poles:
             real, imag = at_dc - 2.0 * (1.0 + a2) * v, gap * sine
-            size = real * real + imag * imag
-            of_a.append(step1 * real / size)
-            of_a.append(step2 * (cosine * real - sine * imag) / size)
+            squared = real * real + imag * imag
+            of_a.append(step1 * real / squared)
+            of_a.append(step2 * (cosine * real - sine * imag) / squared)
         of_b = [
-            gain * step / (4.0 * (zero - v))
+            step * gain / (4.0 * (zero - v))
             if zero != v
             else step * math.exp(survey.response.without(zero) - survey.peak)
             for zero, step in zeros
@@ -134,54 +145,81 @@ def cascade_bits(design: Design, mask: Mask, number_format: NumberFormat) -> Pre
         math.hypot(step1, step2) / abs(complex(at_dc - 2.0 * (1.0 + a2) * _v(w), gap * math.sin(w)))
         for _, a2, at_dc, gap, w, step1, step2 in poles
     ]
-    return _prediction(mask, survey, changes, unstable)
+    return _prediction(survey, changes, unstable)
 
 
-def coefficients(design: Design) -> tuple[list[float], list[float]]:
-    """The expanded b0..bn and 1, a1..an, each as good as its own last digits: not so the response that they give.
+def fir_bits(taps: int, mask: Mask, number_format: NumberFormat, level: float | None = None) -> Prediction:
+    """Bits for the taps of a linear-phase FIR filter, `transversal` or `symmetric`: both store the same ones.
 
-    A cosine that is 0 up to rounding leaves coefficients of some 1e-17, as in half-band designs.
+    `level`: the greatest error of the unrounded filter over the tolerance, below 1. None takes the filter
+    for the shortest that does, with half a tap to spare; how much it really has is not known then, and
+    `high` infinite.
+
+    Steps of 2^-B in N taps change the amplitude by sqrt(N/12) 2^-B, one standard deviation (Chan, Rabiner
+    1973: from memory), which must stay a small part of what the filter leaves of the least tolerance. In
+    `fixed`, the taps share the least power of two above them all; the greatest is taken for the mean of
+    the amplitude. Raises ValueError where the mask contradicts itself.
     """
-    numerator = _product(_polynomial(root) for root in design.zeros)
-    gain = design.sign * math.exp(design.log_gain)
-    return [gain * value for value in numerator], _product(_polynomial(root) for root in design.poles)
+    bands = fir_length.amplitude_bands(mask)
+    if bands is None:
+        raise ValueError("no filter keeps a mask that contradicts itself")
+    widths = [step.width for step in fir_length.steps(bands)]
+    if taps == 1 or not widths:
+        return Prediction(LEAST_BITS, LEAST_BITS, LEAST_BITS, 0.0)
+    # A filter d times as good takes 1.37 log10(1/d) / width more taps (Kaiser 1974: from memory).
+    spare = 1.0 - (10.0 ** (-0.5 * min(widths) / 1.37) if level is None else level)
+    margin = spare * min(band.tolerance for band in bands)
+    if margin <= 0.0:
+        return Prediction(LEAST_BITS, LEAST_BITS, math.inf, 0.0)
+    if number_format == "fixed":
+        error = math.ldexp(math.sqrt(taps / 12.0), 1 + math.frexp(_mean_power(bands, 1))[1])
+    else:
+        # The mean square of 2^e / h over mantissas spread evenly in log: 3 / (2 ln 2).
+        error = math.sqrt(1.5 / math.log(2.0) * _mean_power(bands, 2) / 12.0)
+    real = math.log2(error / margin) + FIR_ODDS[number_format]
+    least = real if level is not None else real + math.log2(spare)
+    return Prediction(
+        max(LEAST_BITS, math.ceil(real)),
+        max(LEAST_BITS, math.ceil(least - FIR_BELOW[number_format])),
+        math.inf if level is None else max(LEAST_BITS, math.floor(real + FIR_ABOVE[number_format])),
+        real,
+    )
 
 
-def spread(values: Iterable[float]) -> float:
-    """The greatest of these coefficients over the least that is not 0, in magnitude; 1 where none is."""
-    sizes = [abs(value) for value in values if value != 0.0]
-    return max(sizes) / min(sizes) if sizes else 1.0
+def _mean_power(bands: Sequence[fir_length.AmplitudeBand], exponent: int) -> float:
+    """The mean over 0..pi of a power of the amplitude, straight between the middles of the bands."""
+    corners = [(edge, band.desired**exponent) for band in bands for edge in (band.low, band.high)]
+    corners = [(0.0, corners[0][1]), *corners, (math.pi, corners[-1][1])]
+    return sum((w - left) * (value + y) / 2.0 for (left, value), (w, y) in pairwise(corners)) / math.pi
 
 
-def zero_scatter(design: Design, mantissa_bits: int) -> Scatter | None:
-    """The multiple zero that scatters farthest when the expanded numerator is rounded; None where all are simple.
+def zero_scatter(design: Design, bits: int, number_format: NumberFormat = "floating") -> Scatter | None:
+    """The multiple zero that rounding the expanded numerator scatters farthest; None where all are simple.
 
-    With B = C (1 - zero/z)^m, an error d moves the zeros by (|d| / |C|)^(1/m) (Wilkinson 1963: from memory). The
-    numerator stays symmetric, so one of an odd number of zeros at z = +-1 stays where it is.
+    With B = C (1 - z_i/z)^m, an error d of B moves the zeros by (|d| / |C|)^(1/m) (Wilkinson 1963: from
+    memory); d is taken for its standard deviation. The numerator stays symmetric, so that one of an odd
+    number of zeros at z = +-1 stays where it is.
     """
-    numerator, _ = coefficients(design)
-    steps = [2.0 ** (math.frexp(value)[1] - mantissa_bits) for value in numerator]
-    arms = _arms(len(numerator))
-    wave = math.sin if _zeros_at_one(design) % 2 else math.cos
-    counts: dict[Root, int] = {}
-    for root in design.zeros:
-        counts[root] = counts.get(root, 0) + 1
+    steps = _steps(polynomials.expanded(design.zeros), number_format)
+    arms, wave = _symmetry(design)
     worst = None
-    for root, count in counts.items():
-        fixed = not root.pair and count % 2 == 1
-        if count - fixed < 2:
+    for root in dict.fromkeys(design.zeros):
+        multiplicity = design.zeros.count(root)
+        stays = not root.pair and multiplicity % 2 == 1
+        if multiplicity - stays < 2:
             continue
         errors = [
-            step * (arm if fixed else wave(arm * root.angle)) * (1.0 if arm == 0.0 else 2.0)
+            step * (arm if stays else wave(arm * root.angle)) * (1.0 if arm == 0.0 else 2.0)
             for arm, step in zip(arms, steps, strict=False)
         ]
-        size = math.exp(design.log_gain) * (2.0 * math.sin(root.angle) if root.pair else 1.0) ** count
+        size = (2.0 * math.sin(root.angle) if root.pair else 1.0) ** multiplicity
         for other in design.zeros:
             if other != root:
-                size *= abs(sum(c * root.z**-k for k, c in enumerate(_polynomial(other))))
-        distance = (math.hypot(*errors) / math.sqrt(12.0) / size) ** (1.0 / (count - fixed))
+                size *= abs(sum(c * root.z**-k for k, c in enumerate(polynomials.factor(other))))
+        error = math.ldexp(math.hypot(*errors) / math.sqrt(12.0), -bits)
+        distance = (error / size) ** (1.0 / (multiplicity - stays))
         if worst is None or distance > worst.distance:
-            worst = Scatter(root.angle, count, distance)
+            worst = Scatter(root.angle, multiplicity, distance)
     return worst
 
 
@@ -266,8 +304,14 @@ class _Response:
 
 @dataclass(frozen=True, slots=True)
 class _Survey:
-    """What the predictions for all structures and number formats of a design share."""
+    """What the predictions for all structures and number formats of a design share.
 
+    Where most poles lie beyond pi/2, design and mask are those at pi - w: the coefficients differ only in
+    sign, and v keeps its digits only near w = 0.
+    """
+
+    design: Design
+    mask: Mask
     response: _Response
     sections: tuple[_Section, ...]
     nodes: tuple[list[_Node], ...]
@@ -282,6 +326,8 @@ class _Survey:
 def _survey(design: Design, mask: Mask) -> _Survey:
     if any(root.gap != 0.0 for root in design.zeros):
         raise ValueError("the zeros must lie on the unit circle")
+    if sum(root.angle - math.pi / 2.0 for root in design.poles) > 0.0:
+        design, mask = _mirrored(design, mask)
     response = _Response(design)
     resonances = [_v(root.angle) for root in design.poles]
     nodes = tuple(
@@ -298,7 +344,19 @@ def _survey(design: Design, mask: Mask) -> _Survey:
     unguarded = (
         root.angle for root in design.poles if not any(b.low <= root.angle <= b.high for b in passes)
     )
-    return _Survey(response, _sections(design.poles), nodes, peak, tuple(unguarded))
+    return _Survey(design, mask, response, _sections(design.poles), nodes, peak, tuple(unguarded))
+
+
+def _mirrored(design: Design, mask: Mask) -> tuple[Design, Mask]:
+    """The design and the mask with every frequency w at pi - w."""
+
+    def turned(roots: Iterable[Root]) -> tuple[Root, ...]:
+        return tuple(Root(math.pi - root.angle, root.gap, root.pair) for root in roots)
+
+    bands = (replace(band, low=math.pi - band.high, high=math.pi - band.low) for band in mask.bands)
+    return replace(design, poles=turned(design.poles), zeros=turned(design.zeros)), replace(
+        mask, bands=tuple(bands)
+    )
 
 
 def _lobes(response: _Response, band: MaskBand) -> list[_Node]:
@@ -306,36 +364,33 @@ def _lobes(response: _Response, band: MaskBand) -> list[_Node]:
     low, high = _v(band.low), _v(band.high)
     ends = [low, *sorted(zero for zero in response.zeros if low < zero < high), high]
     nodes = [response.at(v) for v in ends]
-    for left, right in zip(ends, ends[1:], strict=False):
+    for left, right in pairwise(ends):
         nodes.append(_extreme(response, (left + right) / 2.0, left, right))
     return nodes
 
 
 def _ripples(response: _Response, band: MaskBand, resonances: Sequence[float]) -> list[_Node]:
-    """Edges and extremes; where ln|H| is flat, resonances and places between them, as its errors are not flat."""
+    """Edges and extremes; where ln|H| is flat, resonances and places between them: its errors aren't flat."""
     low, high = _v(band.low), _v(band.high)
     inner = {*resonances, *response.zeros} if band.kind == "bounds" else set(resonances)
     ends = [response.at(v) for v in sorted({low, high, *(v for v in inner if low < v < high)})]
     most, least = band.most, band.least
-    height = 1.0 if most is None or least is None else most - least
-    floor = (least if least is not None else most if most is not None else 0.0) - 6.0
-    nodes = [ends[0], *ends[1:][-1:]]
-    flat = False
-    for left, right in zip(ends, ends[1:], strict=False):
-        fine = [
-            left,
-            *_halved(response, left, right, _SMOOTH * height * _NEPERS, floor * _NEPERS, _HALVINGS),
-            right,
-        ]
-        turns = [(a, b) for a, b in zip(fine, fine[1:], strict=False) if a.slope * b.slope < 0.0]
-        for a, b in turns:
-            guess = a.v + (b.v - a.v) * a.slope / (a.slope - b.slope)
-            nodes.append(_extreme(response, guess, a.v, b.v))
-        if not turns:
-            nodes.append(fine[len(fine) // 2])
-        if flat and not turns:
+    heights = [1.0 if most is None or least is None else most - least, *([most] if most else [])]
+    tolerance = _SMOOTH * min(map(abs, heights)) * _NEPERS
+    floor = ((least if least is not None else most if most is not None else 0.0) - 6.0) * _NEPERS
+    fine = [ends[0]]
+    for left, right in pairwise(ends):
+        fine += [*_halved(response, left, right, tolerance, floor, _HALVINGS), right]
+    nodes = [fine[0], *fine[1:][-1:]]
+    turned = True
+    for left, right in pairwise(fine):
+        turns = left.slope * right.slope < 0.0
+        if turns:
+            guess = left.v + (right.v - left.v) * left.slope / (left.slope - right.slope)
+            nodes.append(_extreme(response, guess, left.v, right.v))
+        elif not turned:
             nodes.append(left)
-        flat = not turns
+        turned = turns
     return nodes
 
 
@@ -403,12 +458,13 @@ def _inverse(sections: Iterable[_Section], v: float, w: float) -> complex:
 
 
 def _prediction(
-    mask: Mask, survey: _Survey, changes: Callable[[float, float], _Changes], unstable: Sequence[float]
+    survey: _Survey, changes: Callable[[float, float], _Changes], unstable: Sequence[float]
 ) -> Prediction | None:
     """The bits at which every condition of the mask holds, and each ratio in `unstable` is small against 1.
 
     `changes` takes v and |H| over the highest gain.
     """
+    mask = survey.mask
     passes = any(band.kind == "pass" for band in mask.bands)
     gain_is_free = passes and all(band.relative for band in mask.bands)
     worst, slack = max(unstable, default=0.0), 1.0
@@ -420,6 +476,8 @@ def _prediction(
             gain = math.exp(level)
             of_a, of_b = changes(node.v, gain)
             if window is not None:
+                if gain == 0.0:
+                    return None
                 change = [*of_a, *(-value / gain for value in of_b)]
                 rippling.append((number, window, level, change, math.hypot(*change)))
             if upper is not None:
@@ -444,8 +502,13 @@ def _prediction(
     if slack < -NO_MARGIN:
         return None
     real = math.log2(worst / math.sqrt(12.0)) + ODDS if worst else 0.0
-    high = max(LEAST_BITS, math.ceil(real + ERROR) + LUCK) if slack > NO_MARGIN else math.inf
-    return Prediction(max(LEAST_BITS, math.ceil(real)), max(LEAST_BITS, math.ceil(real - ERROR)), high, real)
+    tight = slack <= NO_MARGIN
+    return Prediction(
+        max(LEAST_BITS, math.ceil(real)),
+        max(LEAST_BITS, math.ceil(real - BELOW - tight)),
+        math.inf if tight else max(LEAST_BITS, math.floor(real + ABOVE)),
+        real,
+    )
 
 
 def _limits(
@@ -468,43 +531,15 @@ def _steps(values: Sequence[float], number_format: NumberFormat, exponent: int |
     `exponent`: of the power of two that bounds them in fixed point; None takes the least one above them all.
     """
     top = max(map(abs, values), default=0.0)
-    if number_format == "fixed" and exponent is None:
-        exponent = math.frexp(top)[1]
+    shared = math.ldexp(2.0, math.frexp(top)[1] if exponent is None else exponent)
     return [
         0.0
-        if abs(value) <= _NONE * top or abs(value) in (1.0, 2.0)
-        else math.ldexp(2.0, exponent)
+        if abs(value) <= _LOST * top or abs(value) in (1.0, 2.0)
+        else shared
         if number_format == "fixed"
         else math.ldexp(1.0, math.frexp(value)[1])
         for value in values
     ]
-
-
-def _zeros_at_one(design: Design) -> int:
-    return sum(1 for root in design.zeros if not root.pair and root.angle == 0.0)
-
-
-def _arms(count: int) -> list[float]:
-    """Distances from the middle of `count` coefficients, for the first half of them and the middle one."""
-    return [(count - 1) / 2.0 - k for k in range((count + 1) // 2)]
-
-
-def _polynomial(root: Root) -> tuple[float, ...]:
-    radius = math.sqrt(1.0 - root.gap)
-    if root.pair:
-        return 1.0, -2.0 * radius * math.cos(root.angle), 1.0 - root.gap
-    return 1.0, -radius if root.angle == 0.0 else radius
-
-
-def _product(factors: Iterable[Sequence[float]]) -> list[float]:
-    product = [1.0]
-    for factor in factors:
-        longer = [0.0] * (len(product) + len(factor) - 1)
-        for shift, weight in enumerate(factor):
-            for k, value in enumerate(product, shift):
-                longer[k] += weight * value
-        product = longer
-    return product
 
 
 def _shortfall(root: Root) -> float:
@@ -513,4 +548,15 @@ def _shortfall(root: Root) -> float:
 
 
 def _v(w: float) -> float:
+    """(1 - cos w) / 2, without cancellation."""
     return math.sin(w / 2.0) ** 2
+
+
+def _symmetry(design: Design) -> tuple[list[float], Callable[[float], float]]:
+    """How far the numerator's coefficients lie from its middle, up to there, and the wave of each pair.
+
+    Zeros on the circle make b_k = b_(n-k), or its negative where an odd number of them lies at z = 1.
+    """
+    degree = sum(2 if root.pair else 1 for root in design.zeros)
+    at_one = sum(1 for root in design.zeros if not root.pair and root.angle == 0.0)
+    return [degree / 2.0 - k for k in range(degree // 2 + 1)], math.sin if at_one % 2 else math.cos

@@ -175,10 +175,10 @@ def kaiser(step: Step) -> float:
     """Length in taps for an equiripple low-pass filter, unrounded.
 
     Kaiser, "Nonrecursive digital filter design using the I0-sinh window function", 1974, from memory:
-    order = (-10 log10(dp ds) - 13) / (14.6 df), where 14.6 is 2.324 * 2 pi.
+    order = (-10 log10(dp ds) - 13) / (14.6 df).
     """
     decibels = -10.0 * math.log10(step.pass_ripple * step.stop_ripple)
-    return (decibels - 13.0) / (2.324 * math.tau * step.width) + 1.0
+    return (decibels - 13.0) / (14.6 * step.width) + 1.0
 
 
 def herrmann_rabiner_chan(step: Step) -> float:
@@ -205,30 +205,40 @@ def ichige(step: Step) -> float:
     """Length in taps for an equiripple low-pass filter, unrounded.
 
     Ichige, Iwaki & Ishii, "Accurate estimation of minimum filter length for optimum FIR digital filters",
-    2000, from memory and without the roundings inside: a length for equal ripples, corrected for the
-    place of the transition and for unequal ripples.
+    2000, from memory and without the roundings inside: a length for equal ripples, corrected for the place
+    of the transition and for unequal ripples. Where the stop ripple is the greater one, the complement
+    1 - A is estimated, whose bands have changed places.
     """
-    width, log_p = step.width, -math.log10(step.pass_ripple)
-    room = 0.5 - width
+    width, room = step.width, 0.5 - step.width
+    if step.pass_ripple >= step.stop_ripple:
+        broad, fine = step.pass_ripple, step.stop_ripple
+        broad_width, fine_width = step.pass_width, step.stop_width
+    else:
+        broad, fine = step.stop_ripple, step.pass_ripple
+        broad_width, fine_width = step.stop_width, step.pass_width
+    broad = min(broad, 0.499)  # the formula ends at 0.5
+    if room <= 0.0 or fine >= broad:
+        return 1.0
 
     def place(band_width: float, slope: float) -> float:
         return 2.0 / math.pi * math.atan(slope * (1.0 / max(band_width, 1e-9) - 1.0 / room))
 
-    if room <= 0.0 or step.pass_ripple >= 0.5:
-        return 1.0
-    slope = 2.325 * log_p**-0.445 * width**-1.39
-    equal = 1.0 + 1.101 / width * max(-math.log10(2.0 * step.pass_ripple), 0.0) ** 1.1
-    unequal = 0.52 / width * math.log10(step.pass_ripple / step.stop_ripple) * log_p**0.17
-    equal *= (place(step.pass_width, slope) + place(step.stop_width, slope) + 1.0) / 3.0
-    unequal *= place(step.pass_width, 1.1 / width) - (place(step.stop_width, 0.29 / width) - 1.0) / 2.0
+    log_broad = -math.log10(broad)
+    slope = 2.325 * math.pow(log_broad, -0.445) * math.pow(width, -1.39)
+    equal = 1.0 + 1.101 / width * math.pow(log_broad - math.log10(2.0), 1.1)
+    equal *= (place(broad_width, slope) + place(fine_width, slope) + 1.0) / 3.0
+    unequal = 0.52 / width * math.log10(broad / fine) * math.pow(log_broad, 0.17)
+    unequal *= place(broad_width, 1.1 / width) - (place(fine_width, 0.29 / width) - 1.0) / 2.0
     return equal + unequal
 
 
-def equiripple_length(mask: Mask) -> LengthEstimate | None:
+def equiripple_length(mask: Mask, bounded_transitions: bool = True) -> LengthEstimate | None:
     """The least length of a symmetric FIR filter that meets the mask, estimated.
 
-    One step (low-pass, high-pass) by Ichige et al. (2000); several by the step that needs most, with a
-    wider band. None where no length will do, because the mask contradicts itself.
+    One step (low-pass, high-pass) by Ichige et al. (2000). Several by the step that needs most, times a
+    factor fitted to the exact lengths of 1,300 random masks of 3 to 5 bands: wide transitions elsewhere
+    spare taps. `low` and `high` are the spread of the same masks, widened. None where no length will do,
+    because the mask contradicts itself.
     """
     bands = amplitude_bands(mask)
     if bands is None:
@@ -238,18 +248,25 @@ def equiripple_length(mask: Mask) -> LengthEstimate | None:
         return LengthEstimate(1, 1, 1, "constant")
     if any(step.width <= 0.0 for step in wanted):
         return None
-    length = max(1.0, *(ichige(step) for step in wanted))
+    length, hardest = max(((ichige(step), step) for step in wanted), key=lambda pair: pair[0])
+    broad = max(max(step.pass_ripple, step.stop_ripple) for step in wanted) > 0.25
     if len(wanted) == 1:
-        return _estimate(length, 0.92, 1.08, bands, "ichige")
-    return _estimate(length, 0.6, 1.6, bands, "multiband")
+        narrow = min(hardest.pass_width, hardest.stop_width) * length < 5.0
+        low, high = (0.15, 2.0) if broad else (0.85, 1.2) if narrow else (0.95, 1.07)
+        return _estimate(length, low, high, bands, "ichige")
+    elsewhere = 1.0 - 2.0 * hardest.width - sum(band.high - band.low for band in bands) / math.pi
+    length = max(1.0, length * math.exp(0.032 - 0.285 * elsewhere))
+    low = 0.15 if broad else 0.65 if bounded_transitions else 0.25
+    return _estimate(length, low, 2.0 if broad else 1.45, bands, "multiband")
 
 
 def kaiser_window_length(mask: Mask) -> KaiserWindow | None:
     """The Kaiser window that meets the mask, estimated.
 
     Kaiser (1974), from memory: with A = -20 log10 of the least deviation and dw the narrowest transition,
-    order = (A - 7.95) / (2.285 dw), or 5.794 / dw below 21 dB; beta as in `kaiser_beta`. None where no
-    length will do, because the mask contradicts itself.
+    order = (A - 7.95) / (2.285 dw), or 5.794 / dw below 21 dB; beta as in `kaiser_beta`. `low` and `high`
+    hold the least length found with cutoffs amid the transitions and a beta up to 0.3 higher, over 300
+    random masks, widened. None where no length will do, because the mask contradicts itself.
     """
     bands = amplitude_bands(mask)
     if bands is None:
@@ -263,7 +280,7 @@ def kaiser_window_length(mask: Mask) -> KaiserWindow | None:
     attenuation_db = -20.0 * math.log10(ripple)
     width = math.tau * min(step.width for step in wanted)
     order = (attenuation_db - 7.95) / 2.285 / width if attenuation_db > 21.0 else 5.794 / width
-    low, high = (0.9, 1.1) if len(wanted) == 1 else (0.7, 1.3)
+    low, high = (0.95, 1.12) if len(wanted) == 1 else (0.45, 1.2)
     length = _estimate(order + 1.0, low, high, bands, "kaiser-window")
     return KaiserWindow(kaiser_beta(attenuation_db), attenuation_db, order, length)
 

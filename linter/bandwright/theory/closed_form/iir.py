@@ -3,22 +3,21 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 from bandwright import limits
-from bandwright.theory.closed_form import transforms
+from bandwright.theory.closed_form import placement, transforms
 from bandwright.theory.closed_form.family import Family
 from bandwright.theory.closed_form.levels import attenuation_db
-from bandwright.theory.closed_form.selectivity import Edge, Selectivity, Side
+from bandwright.theory.closed_form.selectivity import Selectivity, Side, Transition
 from bandwright.theory.closed_form.types import Design
-from bandwright.theory.closed_form.warping import frequency, prewarped
+from bandwright.theory.closed_form.warping import frequency
 
 TIE = 1e-11
 """Orders this close above a whole number, relatively, are that number: a few ulp of a level decide."""
 
-EDGE_BISECTIONS = 40
-"""Halvings of the range of a prototype's free stop edge."""
+NO_MARGIN = 1e-9
+"""Nepers that a mask may be missed by: what `TIE` makes of an order at 200 dB."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -33,138 +32,194 @@ class IirOrder:
     tie: bool
     """Whether the unrounded order is a whole number as far as double precision can tell."""
     binding_item: int
+    """Index of the stop band at the transition that sets the order."""
     binding_side: Side
+    """Which edge of that stop band."""
     spare_db: float
-    """How much deeper than asked the binding stop edge gets, with the pass band used to the full."""
+    """How much deeper than asked the stop band gets from that edge on, all of the pass band used."""
     free_edge: float | None
-    """rad/sample: how far the other stop edge of a band-pass could move inward for nothing."""
+    """rad/sample: how far the edge across the other transition, the stop edge of a band-pass or the pass edge
+    of a band-stop, could move towards it for nothing. None where there is no other, or both bind."""
+
+
+@dataclass(frozen=True, slots=True)
+class Margin:
+    """By how much a prototype exceeds a mask."""
+
+    log_ratio: float
+    """ln of the least ratio of stop-band excess to the one asked, with the pass band used to the full."""
+    log_g: float
+    """ln of the pass-band excess at the prototype's pass edge when the pass band is used to the full."""
+    e: float
+    """The prototype's stop edge less 1."""
 
 
 def least_order(family: Family, selectivity: Selectivity) -> IirOrder | None:
     """The least order of the family that meets the mask; None where it is over `limits.MAX_IIR_ORDER`.
 
-    One stop edge and one pass edge decide wherever the family has no free stop edge. Where it has, that
-    pair gives a lower bound, from which the order is raised until one stop edge serves all bands.
+    The worst transition alone decides where the family has no free edge. Where it has, that is a lower
+    bound, from which the order is raised until one place of the edge serves all transitions.
     """
-    real, binding, pass_edge = max(
-        ((family.real_order(e, stop.excess / allowed), stop, edge) for e, allowed, stop, edge in _pairs(family, selectivity)),
-        key=lambda pair: pair[0],
-    )
     scale = 2 if selectivity.doubles else 1
-    if not real * scale <= limits.MAX_IIR_ORDER:
+    most = limits.MAX_IIR_ORDER // scale
+    real, binding = _bound(family, selectivity)
+    if not real <= most:
         return None
-    nearest = max(1, round(real))
-    tie = abs(real - nearest) <= TIE * real
-    order = max(1, math.ceil(real * (1.0 - TIE)))
-    while margin(family, selectivity, order)[0] < 1.0 - 1e-9:
-        order, real, tie = order + 1, float(order), False
-        if order * scale > limits.MAX_IIR_ORDER:
+    order = math.ceil(real * (1.0 - TIE)) or 1
+    tie = abs(real - order) <= TIE * real
+    if _is_closed(family, selectivity):
+        reached = family.log_discrimination(order, binding.e)
+    else:
+        searched = _searched(family, selectivity, order, real)
+        if searched is None:
             return None
-    bound = pass_edge if selectivity.kind == "band-stop" else binding
-    spare = attenuation_db(pass_edge.excess * family.discrimination(order, bound.e))
+        order, real, tie, e = searched
+        excess = placement.one_excess(family, selectivity, order, e, binding)
+        reached = excess + math.log(binding.discrimination)
     return IirOrder(
         order * scale,
         real * scale,
         order,
         tie,
-        bound.item,
-        bound.side,
-        spare - attenuation_db(binding.excess),
-        _free_edge(selectivity, bound),
+        binding.stop_edge.item,
+        binding.stop_edge.side,
+        attenuation_db(reached + math.log(binding.pass_edge.excess)) - binding.stop_edge.db,
+        _free_edge(family, selectivity, binding, real) if scale == 2 else None,
     )
 
 
-def margin(family: Family, selectivity: Selectivity, order: int) -> tuple[float, float, float]:
-    """How far a prototype of this order exceeds what is asked: (r, g, e).
+def order_meets(family: Family, selectivity: Selectivity, order: int) -> bool:
+    """Whether some filter of the family with this digital order meets the mask."""
+    prototype_order = order // 2 if selectivity.doubles else order
+    return prototype_order >= 1 and margin(family, selectivity, prototype_order).log_ratio >= -NO_MARGIN
 
-    r is the least ratio of stop-band excess to that asked, with the pass band used to the full: the
-    order meets the mask if r >= 1. g is the pass-band excess at the pass edge 1, e + 1 the stop edge.
-    """
-    e = _stop_edge(family, selectivity, order)
-    g = _allowed_at_edge(family, selectivity, order, e)
-    return g * min(_reached(family, selectivity, order, e, stop) / stop.excess for stop in selectivity.stops), g, e
+
+def margin(family: Family, selectivity: Selectivity, order: int) -> Margin:
+    """By how much the best prototype of this order (not the digital one) exceeds the mask."""
+    e = (
+        placement.best_edge(family, selectivity, order)
+        if placement.free(family, selectivity)
+        else selectivity.transitions[0].e
+    )
+    log_ratio = placement.log_excess(family, selectivity, order, e)
+    binding = selectivity.transitions[0]
+    if selectivity.kind == "band-stop":
+        log_g = math.log(binding.stop_edge.excess) + log_ratio - family.log_discrimination(order, e)
+    else:
+        log_g = math.log(binding.pass_edge.excess)
+    return Margin(log_ratio + _peak_loss(family, selectivity, order, e), log_g, e)
 
 
 def reference_design(family: Family, selectivity: Selectivity, order: int) -> Design:
     """The design of this digital order with the spare margin shared equally, in log, by pass and stop band.
 
-    With r of `margin`, the pass-band excess is g / sqrt(r); the stop band then has sqrt(r) to spare.
+    With r the ratio of `Margin`, the pass-band excess is g / sqrt(r); the stop band then has sqrt(r) to
+    spare. An order too low for the mask gets all of the pass band, and misses the stop band.
     """
     prototype_order = order // 2 if selectivity.doubles else order
-    r, allowed, e = margin(family, selectivity, prototype_order)
-    g = allowed / math.sqrt(max(1.0, r))
-    prototype = family.prototype(prototype_order, e, g)
-    ripples_at_dc = not family.MONOTONE_PASS and prototype_order % 2 == 0
-    log_dc_gain = -0.5 * math.log1p(g) if ripples_at_dc else 0.0
-    return transforms.to_digital(prototype, selectivity, 1.0 + selectivity.stops[0].e, log_dc_gain)
+    found = margin(family, selectivity, prototype_order)
+    log_g = found.log_g - 0.5 * max(0.0, found.log_ratio)
+    prototype = family.prototype(prototype_order, found.e, log_g)
+    dips_at_dc = family.PASS_EDGE_IS_FREE and prototype_order % 2 == 0
+    log_dc_gain = -0.5 * math.log1p(math.exp(log_g)) if dips_at_dc else 0.0
+    return transforms.to_digital(prototype, selectivity, 1.0 + found.e, log_dc_gain)
 
 
-def _pairs(family: Family, selectivity: Selectivity) -> Iterator[tuple[float, float, Edge, Edge]]:
-    """(e, allowed excess, stop edge, pass edge) of each pair that alone bounds the order from below."""
-    if selectivity.kind == "band-stop" and family.MONOTONE_PASS:
-        for edge in selectivity.passes:
-            yield edge.e, edge.excess, selectivity.stops[0], edge
-        return
-    tightest = min(selectivity.passes, key=lambda edge: (edge.e, edge.excess))
-    allowed = min(edge.excess for edge in selectivity.passes)
-    for stop in selectivity.stops:
-        yield stop.e, allowed, stop, replace(tightest, excess=allowed)
+def _bound(family: Family, selectivity: Selectivity) -> tuple[float, Transition]:
+    """The real-valued order that the worst transition alone takes, and that transition."""
+    binding = selectivity.transitions[0]
+    real = placement.lower_bound(family, selectivity, binding)
+    for one in selectivity.transitions[1:]:
+        bound = placement.lower_bound(family, selectivity, one)
+        if bound > real:
+            real, binding = bound, one
+    return real, binding
 
 
-def _allowed_at_edge(family: Family, selectivity: Selectivity, order: int, e: float) -> float:
-    """The largest pass-band excess at the prototype's pass edge that every pass band admits."""
-    if selectivity.kind != "band-stop" or not family.MONOTONE_PASS:
-        return min(edge.excess for edge in selectivity.passes)
-    nearest = min(edge.e for edge in selectivity.passes)
-    return min(
-        edge.excess / family.characteristic(order, e, (nearest - edge.e) / (1.0 + edge.e))
-        for edge in selectivity.passes
+def _is_closed(family: Family, selectivity: Selectivity) -> bool:
+    """Whether the order of the worst transition is the least order of the mask."""
+    if selectivity.nearest_decides:
+        return True
+    return not placement.free(family, selectivity) and all(
+        one.inner == 0.0 for one in selectivity.transitions
     )
 
 
-def _reached(family: Family, selectivity: Selectivity, order: int, e: float, stop: Edge) -> float:
-    """The least F^2 from a stop edge on, for the prototype with the stop edge 1 + e."""
-    if stop.e < e:
-        return family.characteristic(order, e, stop.e)
-    return family.discrimination(order, e if family.STOP_EDGE_IS_FREE else stop.e)
+def _searched(
+    family: Family, selectivity: Selectivity, order: int, real: float
+) -> tuple[int, float, bool, float] | None:
+    """Least order, real-valued order, tie and e, from an order on that no lower one can do; None if over."""
+    most = limits.MAX_IIR_ORDER // (2 if selectivity.doubles else 1)
+    if real > 1.0 and all(one.until == math.inf and one.inner == 0.0 for one in selectivity.transitions):
+        level = placement.level_order(family, selectivity)
+        if not level <= most:
+            return None
+        if not _reaches_beyond_ripple(family, selectivity, order):
+            order = math.ceil(level * (1.0 - TIE))
+            return order, level, abs(level - order) <= TIE * level, margin(family, selectivity, order).e
+    while (found := margin(family, selectivity, order)).log_ratio < -NO_MARGIN:
+        order += 1
+        if order > most:
+            return None
+    real = max(real, _unrounded(family, selectivity, order, found.log_ratio))
+    return order, real, abs(found.log_ratio) <= NO_MARGIN, found.e
 
 
-def _stop_edge(family: Family, selectivity: Selectivity, order: int) -> float:
-    """The prototype's stop edge less 1 that serves all stop bands best.
+def _reaches_beyond_ripple(family: Family, selectivity: Selectivity, order: int) -> bool:
+    """Whether a transition may lie beyond the last minimum of the ripple, of an odd order from this one on.
 
-    Moving it outward deepens the stop band beyond it and lets the bands inside rise, so the best place
-    is where the two are even.
+    From there on F rises to infinity, which serves such a transition better than the discrimination.
     """
-    stops = selectivity.stops
-    low, high = stops[0].e, stops[-1].e
-    if not family.STOP_EDGE_IS_FREE or low == high:
-        return low
-
-    def outer_is_ahead(e: float) -> bool:
-        outer = min((family.discrimination(order, e) / s.excess for s in stops if s.e >= e), default=math.inf)
-        inner = min((family.characteristic(order, e, s.e) / s.excess for s in stops if s.e < e), default=math.inf)
-        return outer >= inner
-
-    for _ in range(EDGE_BISECTIONS):
-        middle = 0.5 * (low + high)
-        if middle in (low, high):
-            break
-        low, high = (low, middle) if outer_is_ahead(middle) else (middle, high)
-    return high if outer_is_ahead(high) else low
+    odd = order + 1 - order % 2
+    nearest, farthest = selectivity.transitions[0], selectivity.transitions[-1]
+    return family.lobes(odd, nearest.e, farthest.e) > 0.5 * (odd - 1)
 
 
-def _free_edge(selectivity: Selectivity, binding: Edge) -> float | None:
-    """Where the edge on the other side of a band-pass or band-stop would bind as well.
+def _peak_loss(family: Family, selectivity: Selectivity, order: int, e: float) -> float:
+    """ln of what is left of the stop band's excess where it counts from a gain below the prototype's peak.
 
-    Both edges of equal e lie mirrored about the centre; the inner edge solves
-    s^2 + s (B + e B) - W0^2 = 0 with B the distance of the outer ones.
+    With m the least F^2 in the pass bands, the stop band has to reach g F^2 >= gs + (1 + gs) g m.
     """
-    edges = selectivity.passes if selectivity.kind == "band-stop" else selectivity.stops
-    if not selectivity.doubles or len({(edge.excess) for edge in edges}) > 1 or len(edges) != 2:
+    left = 1.0
+    for one in selectivity.transitions:
+        inner = one.inner * (1.0 + e) if selectivity.kind == "band-stop" else one.inner
+        if inner <= 0.0:
+            continue
+        lull = family.log_lull(order, e, inner) if inner < 1.0 else 0.0
+        reached = (
+            family.log_discrimination(order, e)
+            if selectivity.kind == "band-stop"
+            else (family.log_rise(order, e, one.e, one.until))
+        )
+        left = min(left, 1.0 - (1.0 + one.stop_edge.excess) * math.exp(lull - reached))
+    return math.log(left) if left > 0.0 else -math.inf
+
+
+def _unrounded(family: Family, selectivity: Selectivity, order: int, log_ratio: float) -> float:
+    """The real-valued order by the margins of this one and of the one before, which is too low."""
+    if order > 1:
+        before = margin(family, selectivity, order - 1).log_ratio
+    else:
+        before = -max(math.log(one.discrimination) for one in selectivity.transitions)
+    return order - max(0.0, log_ratio) / (log_ratio - before) if before < 0.0 else float(order)
+
+
+def _free_edge(family: Family, selectivity: Selectivity, binding: Transition, order: float) -> float | None:
+    """The edge across the other of two transitions at which that one would bind as well.
+
+    A prototype frequency x lies at the two W with |W^2 - W0^2| = W B x, which are W0^2 / W of one another.
+    """
+    others = [one for one in selectivity.transitions if one is not binding]
+    if len(others) != 1:
         return None
-    half = 0.5 * selectivity.width * (1.0 + binding.e)
-    square = selectivity.centre**2
-    below = square / (half + math.sqrt(half * half + square))
-    other = edges[0] if edges[1].w == binding.w else edges[1]
-    is_below = prewarped(other.w) < selectivity.centre
-    return frequency(below if is_below else square / below)
+    other = others[0]
+    if other.discrimination == binding.discrimination:
+        e = binding.e
+    elif placement.free(family, selectivity) or order <= 0.0 or other.discrimination <= 1.0:
+        return None
+    else:
+        e = family.edge(order, math.log(other.discrimination))
+    half = 0.5 * selectivity.width * (1.0 + e)
+    above = half + math.hypot(half, selectivity.centre)
+    is_below = other.stop_edge.side == ("low" if selectivity.kind == "band-stop" else "high")
+    return frequency(selectivity.centre**2 / above if is_below else above)

@@ -3,13 +3,20 @@
 from __future__ import annotations
 
 import math
+from typing import NamedTuple
 
 from bandwright.theory.closed_form.types import Design, Root
 
 DB_PER_NEPER = 20.0 / math.log(10.0)
 
-REFINEMENTS = 40
-"""Golden-section steps on the largest group delay: enough for double precision."""
+TALL = 0.5
+"""Places with less than this share of the largest delay seen are not climbed from."""
+
+STEPS = 60
+"""Steps to bracket a maximum, and to find it."""
+
+FLAT = 1e-12
+"""A slope below this share of the delay, over the width of the resonance, is none."""
 
 
 def log_gain(design: Design, w: float) -> float:
@@ -29,59 +36,115 @@ def gain_db(design: Design, w: float) -> float:
 
 def group_delay(design: Design, w: float) -> float:
     """The group delay in samples at w (rad/sample)."""
-    return sum(_delay(pole, w) for pole in design.poles) - sum(_delay(zero, w) for zero in design.zeros)
+    on_circle, resonances = _resonances(design)
+    return on_circle + _delay_and_slope(resonances, w)[0]
 
 
 def worst_group_delay(design: Design, low: float, high: float) -> float:
     """The largest group delay in samples between two frequencies in rad/sample.
 
-    It peaks next to pole angles, so these and the points between them are where the search starts.
+    It is climbed to from both ends and from the angle of every pole between them, unless the next of these
+    places uphill is higher and leads on.
     """
-    angles = sorted({low, high, *(pole.angle for pole in design.poles if low < pole.angle < high)})
-    starts = list(angles)
-    for left, right in zip(angles, angles[1:], strict=False):
-        starts += [left + (right - left) * part / 4.0 for part in (1, 2, 3)]
-    starts.sort()
-    delays = [group_delay(design, w) for w in starts]
-    best = max(range(len(starts)), key=delays.__getitem__)
-    left, right = starts[max(0, best - 1)], starts[min(len(starts) - 1, best + 1)]
-    return max(delays[best], _golden_maximum(design, left, right))
+    on_circle, resonances = _resonances(design)
+    starts = [(low, high - low), (high, high - low)]
+    starts += [(one.angle, abs(one.shortfall)) for one in resonances if low < one.angle < high]
+    found = [(w, width, *_delay_and_slope(resonances, w)) for w, width in sorted(starts)]
+    highest = max(delay for *_, delay, _ in found)
+    for place, (w, width, delay, slope) in enumerate(found):
+        uphill = place + (1 if slope > 0.0 else -1)
+        if delay < TALL * highest or not 0 <= uphill < len(found) or abs(slope) * width <= FLAT * delay:
+            continue
+        end, _, next_delay, next_slope = found[uphill]
+        if next_slope * slope <= 0.0 or next_delay < delay:
+            width = min(width, abs(end - w))
+            highest = max(highest, _climbed(resonances, w, width, slope, end))
+    return on_circle + highest
 
 
-def _golden_maximum(design: Design, left: float, right: float) -> float:
-    ratio = (math.sqrt(5.0) - 1.0) / 2.0
-    a, b = right - ratio * (right - left), left + ratio * (right - left)
-    at_a, at_b = group_delay(design, a), group_delay(design, b)
-    for _ in range(REFINEMENTS):
-        if at_a > at_b:
-            right, b, at_b = b, a, at_a
-            a = right - ratio * (right - left)
-            at_a = group_delay(design, a)
+class _Resonance(NamedTuple):
+    """One root of the upper or the lower half plane: what its delay takes."""
+
+    angle: float
+    radius: float
+    shortfall: float
+    """1 - radius"""
+    gap: float
+    sign: float
+    """+1 for a pole, -1 for a zero."""
+
+
+def _resonances(design: Design) -> tuple[float, list[_Resonance]]:
+    """The delay of the zeros on the circle, half a sample each, and all other roots one by one."""
+    on_circle = 0.0
+    found = []
+    for roots, sign in ((design.poles, 1.0), (design.zeros, -1.0)):
+        for root in roots:
+            if root.gap == 0.0:
+                on_circle -= sign * (1.0 if root.pair else 0.5)
+                continue
+            radius = math.sqrt(1.0 - root.gap)
+            shortfall = root.gap / (1.0 + radius)
+            angles = (root.angle, -root.angle) if root.pair else (root.angle,)
+            found += [_Resonance(angle, radius, shortfall, root.gap, sign) for angle in angles]
+    return on_circle, found
+
+
+def _delay_and_slope(resonances: list[_Resonance], w: float) -> tuple[float, float]:
+    """Group delay and its derivative.
+
+    -d arg(1 - r e^-jx) / dx, x = w - angle, is (r cos x - r^2) / |1 - r e^jx|^2 up to its sign, with
+    |1 - r e^jx|^2 = (1 - r)^2 + 4 r s, s = sin(x/2)^2; its derivative is -r (1 - r^2) sin x over the square.
+    """
+    delay = slope = 0.0
+    for angle, radius, shortfall, gap, sign in resonances:
+        half = 0.5 * (w - angle)
+        sine = math.sin(half)
+        square = sine * sine
+        distance = shortfall * shortfall + 4.0 * radius * square
+        share = sign * radius / distance
+        delay += share * (shortfall - 2.0 * square)
+        slope -= share * gap * 2.0 * sine * math.cos(half) / distance
+    return delay, slope
+
+
+def _climbed(resonances: list[_Resonance], w: float, width: float, slope: float, end: float) -> float:
+    """The delay at the next maximum uphill from w, or at the end of the way."""
+    behind, behind_slope = w, slope
+    step = math.copysign(0.25 * width, slope)
+    for _ in range(STEPS):
+        ahead = behind + step
+        if (end - ahead) * step <= 0.0:
+            ahead = end
+        delay, ahead_slope = _delay_and_slope(resonances, ahead)
+        if ahead_slope * slope <= 0.0:
+            break
+        if ahead == end:
+            return delay
+        behind, behind_slope = ahead, ahead_slope
+        step *= 2.0
+    kept = 0
+    for _ in range(STEPS):
+        middle = (behind * ahead_slope - ahead * behind_slope) / (ahead_slope - behind_slope)
+        delay, middle_slope = _delay_and_slope(resonances, middle)
+        if abs(middle_slope * (ahead - behind)) <= FLAT * delay:
+            break
+        if middle_slope * slope > 0.0:
+            behind, behind_slope = middle, middle_slope
+            ahead_slope *= 0.5 if kept == 1 else 1.0
+            kept = 1
         else:
-            left, a, at_a = a, b, at_b
-            b = left + ratio * (right - left)
-            at_b = group_delay(design, b)
-    return max(at_a, at_b)
+            ahead, ahead_slope = middle, middle_slope
+            behind_slope *= 0.5 if kept == -1 else 1.0
+            kept = -1
+    return delay
 
 
 def _log_distance(root: Root, w: float) -> float:
     """ln |1 - z e^-jw|, for a pair of both: |.|^2 = (1 - r)^2 + 4 r sin^2((w - angle)/2)."""
-    r = math.sqrt(1.0 - root.gap)
-    square = (root.gap / (1.0 + r)) ** 2
-    near = square + 4.0 * r * math.sin(0.5 * (w - root.angle)) ** 2
+    radius = math.sqrt(1.0 - root.gap)
+    square = (root.gap / (1.0 + radius)) ** 2
+    near = square + 4.0 * radius * math.sin(0.5 * (w - root.angle)) ** 2
     if root.pair:
-        near *= square + 4.0 * r * math.sin(0.5 * (w + root.angle)) ** 2
+        near *= square + 4.0 * radius * math.sin(0.5 * (w + root.angle)) ** 2
     return 0.5 * math.log(near) if near > 0.0 else -math.inf
-
-
-def _delay(root: Root, w: float) -> float:
-    """-d arg(1 / (1 - z e^-jw)) / dw = (r cos x - r^2) / |1 - r e^jx|^2 with x = w - angle, in samples."""
-    r = math.sqrt(1.0 - root.gap)
-    below_one = root.gap / (1.0 + r)
-    total = 0.0
-    for angle in (root.angle, -root.angle) if root.pair else (root.angle,):
-        s = math.sin(0.5 * (w - angle)) ** 2
-        distance = below_one**2 + 4.0 * r * s
-        # On the circle itself the limit is -1/2 at every frequency.
-        total += r * (below_one - 2.0 * s) / distance if root.gap != 0.0 else -0.5
-    return total

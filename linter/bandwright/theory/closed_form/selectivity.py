@@ -1,4 +1,4 @@
-"""From a mask to what the order formulas take: the edges of the low-pass prototype and their levels."""
+"""From a mask to what the order formulas take: the transitions of a low-pass prototype and their levels."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from typing import Literal
 
 from bandwright.theory.closed_form.levels import excess
 from bandwright.theory.closed_form.types import Mask, MaskBand
-from bandwright.theory.closed_form.warping import prewarped, prewarped_difference
+from bandwright.theory.closed_form.warping import prewarped, prewarped_difference, prewarped_stretch
 
 Kind = Literal["low-pass", "high-pass", "band-pass", "band-stop"]
 Side = Literal["low", "high"]
@@ -23,37 +23,57 @@ SHAPES: dict[tuple[str, ...], Kind] = {
 
 @dataclass(frozen=True, slots=True)
 class Edge:
-    """One edge of a stop or pass band, as the prototype sees it."""
+    """The edge of a pass or stop band next to a transition."""
 
     item: int
     """Index of the band item."""
     side: Side
+    """Which edge of that band."""
     w: float
     """rad/sample."""
-    e: float
-    """The ratio of stop edge to pass edge less 1: of a stop edge to the prototype's pass edge at 1, or,
-    for a pass edge of a band-stop, of the prototype's stop edge to it."""
+    db: float
+    """The window's height of a pass band, the depth below the highest pass gain of a stop band."""
     excess: float
-    """10^(A/10) - 1 of the attenuation allowed (pass) or asked (stop)."""
+    """10^(db/10) - 1"""
+
+
+@dataclass(frozen=True, slots=True)
+class Transition:
+    """A pass edge and a stop edge as the low-pass prototype sees them."""
+
+    pass_edge: Edge
+    stop_edge: Edge
+    e: float
+    """The ratio of stop edge to pass edge in the prototype, less 1."""
+    until: float
+    """The ratio at the far end of the stop band, less 1; infinite at 0 and Nyquist, and for a band-stop."""
+    discrimination: float
+    """What an order has to reach: the ratio gs/gp of the excesses of both edges."""
+    inner: float
+    """The prototype's lowest frequency in the pass bands, if above 0 and the stop band is counted from the
+    highest gain there: over the pass edge, for a band-stop over the stop edge."""
 
 
 @dataclass(frozen=True, slots=True)
 class Selectivity:
-    """A low-pass, high-pass, band-pass or band-stop mask as a low-pass prototype whose pass band ends at 1.
+    """A low-pass, high-pass, band-pass or band-stop mask, seen from its low-pass prototype.
 
-    `stops` are all stop edges by rising `e`: from each on, outward, its attenuation is asked. `passes`
-    are the pass edges; those of a band-stop may lie inside the prototype's pass band.
+    Low-pass, high-pass and band-pass share one pass band, at the prototype's pass edge 1, and have a
+    transition for every stop band; a band-stop has one stop band, and a transition for every pass band.
     """
 
     kind: Kind
-    stops: tuple[Edge, ...]
-    passes: tuple[Edge, ...]
+    transitions: tuple[Transition, ...]
+    """By rising `e`."""
     centre: float
     """W0 of the band transformations, prewarped; 0 for low-pass and high-pass."""
     width: float
-    """The prototype's pass edge for a low-pass, its reciprocal scale for the others (see `transforms`)."""
+    """Prewarped: the pass edge of a low-pass or high-pass, the width of the pass band of a band-pass, of
+    the stop band of a band-stop."""
     peak_db: float
-    """The highest gain in the pass bands."""
+    """The highest gain in the pass bands: the top of their window."""
+    nearest_decides: bool
+    """Whether an order that serves the nearest transition serves them all, whatever the family."""
 
     @property
     def doubles(self) -> bool:
@@ -64,129 +84,209 @@ class Selectivity:
 def selectivity(mask: Mask) -> Selectivity | None:
     """The selectivity of a mask of pass and stop bands; None for masks of another shape.
 
-    Levels: a stop band counts from the highest gain in the pass bands; the pass window's height is what
-    the pass band allows, and the design is scaled so that its peak is the window's top.
+    A stop band counts from the highest gain in the pass bands; the height of a pass window is what the
+    band allows, and the design is scaled so that its peak is the top of the window: any lower peak asks
+    for a higher order. Nothing above that peak is admitted at any frequency.
     """
-    bands = [band for band in mask.bands if band.kind != "bounds"]
-    if len(bands) != len(mask.bands):
+    runs = _runs(mask.bands)
+    if runs is None:
         return None
+    passes = [band for band in mask.bands if band.kind == "pass"]
+    peak = _peak(passes)
+    kind = SHAPES.get(tuple(run[0].kind for run in runs))
+    if kind is None or peak is None or any(len(run) > 1 for run in runs if run[0].kind == "pass"):
+        return None
+    match kind:
+        case "low-pass":
+            return _low_pass(runs[0][0], runs[1], peak)
+        case "high-pass":
+            return _high_pass(runs[0], runs[1][0], peak)
+        case "band-pass":
+            return _band_pass(runs[0], runs[1][0], runs[2], peak)
+        case "band-stop":
+            return _band_stop(runs[0][0], runs[1][0], runs[2][0], peak) if len(runs[1]) == 1 else None
+
+
+def _runs(bands: tuple[MaskBand, ...]) -> list[list[MaskBand]] | None:
+    """The bands with neighbours of one kind together; None where a band asks for something else."""
     runs: list[list[MaskBand]] = []
     for band in bands:
+        if band.kind == "bounds" or (band.kind == "stop" and (band.most is None or band.least is not None)):
+            return None
         if runs and runs[-1][0].kind == band.kind:
             runs[-1].append(band)
         else:
             runs.append([band])
-    kind = SHAPES.get(tuple(run[0].kind for run in runs))
-    passes = [band for band in bands if band.kind == "pass"]
-    if kind is None or any(len(run) > 1 for run in runs if run[0].kind == "pass"):
+    return runs
+
+
+def _peak(passes: list[MaskBand]) -> float | None:
+    """The highest gain that all pass windows admit, in dB; None where it isn't one number."""
+    tops = [band.most for band in passes if band.most is not None and band.least is not None]
+    if not tops or len(tops) < len(passes) or len({band.relative for band in passes}) > 1:
         return None
-    if any(band.least is None or band.most is None for band in passes):
-        return None
-    tops = {band.most for band in passes}
-    peak = passes[0].most or 0.0
-    if len(tops) > 1 or (kind == "band-stop" and len(runs[1]) > 1):
-        return None
-    match kind:
-        case "low-pass":
-            return _low_pass(runs, peak)
-        case "high-pass":
-            return _high_pass(runs, peak)
-        case "band-pass":
-            return _band_pass(runs, peak)
-        case "band-stop":
-            return _band_stop(runs, peak)
+    peak = min(tops)
+    return peak if all(band.least is not None and band.least < peak for band in passes) else None
 
 
-def _low_pass(runs: list[list[MaskBand]], peak: float) -> Selectivity | None:
-    passing = runs[0][0]
-    edge = prewarped(passing.high)
-    stops = [
-        Edge(band.item, "low", band.low, prewarped_difference(passing.high, band.low) / edge, _asked(band, peak))
-        for band in runs[1]
-    ]
-    return _checked("low-pass", stops, (_pass_edge(passing, "high"),), 0.0, edge, peak)
-
-
-def _high_pass(runs: list[list[MaskBand]], peak: float) -> Selectivity | None:
-    passing = runs[1][0]
-    edge = prewarped(passing.low)
-    stops = [
-        Edge(
-            band.item,
-            "high",
-            band.high,
-            prewarped_difference(band.high, passing.low) / prewarped(band.high),
-            _asked(band, peak),
+def _low_pass(passing: MaskBand, stops: list[MaskBand], peak: float) -> Selectivity | None:
+    pass_edge = _pass_edge(passing, "high", peak)
+    inner = prewarped(passing.low) / prewarped(passing.high)
+    transitions = [
+        _transition(
+            band,
+            pass_edge,
+            edge,
+            prewarped_stretch(passing.high, edge.w),
+            prewarped_stretch(passing.high, far),
+            inner,
         )
-        for band in runs[0]
+        for band, edge, far in _above(stops, peak)
     ]
-    return _checked("high-pass", stops, (_pass_edge(passing, "low"),), 0.0, edge, peak)
+    return _checked("low-pass", transitions, 0.0, prewarped(passing.high), peak)
 
 
-def _band_pass(runs: list[list[MaskBand]], peak: float) -> Selectivity | None:
-    """W0^2 = Wp1 Wp2; e = (p1-s)(s+p2)/(s B) below and (s-p2)(s+p1)/(s B) above, B = p2 - p1."""
-    passing = runs[1][0]
+def _high_pass(stops: list[MaskBand], passing: MaskBand, peak: float) -> Selectivity | None:
+    pass_edge = _pass_edge(passing, "low", peak)
+    inner = prewarped(passing.low) / prewarped(passing.high)
+    transitions = [
+        _transition(
+            band,
+            pass_edge,
+            edge,
+            prewarped_stretch(edge.w, passing.low),
+            prewarped_stretch(far, passing.low),
+            inner,
+        )
+        for band, edge, far in _below(stops, peak)
+    ]
+    return _checked("high-pass", transitions, 0.0, prewarped(passing.low), peak)
+
+
+def _band_pass(
+    below: list[MaskBand], passing: MaskBand, above: list[MaskBand], peak: float
+) -> Selectivity | None:
+    """W0^2 = Wp1 Wp2: with both pass edges at 1, any other centre would narrow both transitions.
+
+    Ws lies at |Ws^2 - W0^2| / (Ws B), so e = (p1-s)(s+p2)/(s B) below and (s-p2)(s+p1)/(s B) above.
+    """
     p1, p2 = prewarped(passing.low), prewarped(passing.high)
     width = prewarped_difference(passing.low, passing.high)
-    stops = []
-    for band in runs[0]:
-        s = prewarped(band.high)
-        e = prewarped_difference(band.high, passing.low) * (s + p2) / (s * width)
-        stops.append(Edge(band.item, "high", band.high, e, _asked(band, peak)))
-    for band in runs[2]:
-        s = prewarped(band.low)
-        e = prewarped_difference(passing.high, band.low) * (1.0 + p1 / s) / width
-        stops.append(Edge(band.item, "low", band.low, e, _asked(band, peak)))
-    passes = (_pass_edge(passing, "low"), _pass_edge(passing, "high"))
-    return _checked("band-pass", stops, passes, math.sqrt(p1 * p2), width, peak)
+    if not width > 0.0:
+        return None
+
+    def stretch_below(w: float) -> float:
+        difference = prewarped_difference(w, passing.low)
+        return difference * (1.0 + p2 / prewarped(w)) / width if w > 0.0 else math.inf
+
+    def stretch_above(w: float) -> float:
+        return prewarped_difference(passing.high, w) * (1.0 + p1 / prewarped(w)) / width
+
+    low, high = _pass_edge(passing, "low", peak), _pass_edge(passing, "high", peak)
+    transitions = [
+        _transition(band, low, edge, stretch_below(edge.w), stretch_below(far), 0.0)
+        for band, edge, far in _below(below, peak)
+    ]
+    transitions += [
+        _transition(band, high, edge, stretch_above(edge.w), stretch_above(far), 0.0)
+        for band, edge, far in _above(above, peak)
+    ]
+    return _checked("band-pass", transitions, math.sqrt(p1 * p2), width, peak)
 
 
-def _band_stop(runs: list[list[MaskBand]], peak: float) -> Selectivity | None:
-    """W0^2 = Ws1 Ws2; e = (s1-p1)(p1+s2)/(p1 Bs) below and (p2-s2)(p2+s1)/(p2 Bs) above, Bs = s2 - s1."""
-    below, stopping, above = runs[0][0], runs[1][0], runs[2][0]
+def _band_stop(below: MaskBand, stopping: MaskBand, above: MaskBand, peak: float) -> Selectivity | None:
+    """W0^2 = Ws1 Ws2: with both stop edges at 1, any other centre would narrow both transitions.
+
+    Wp lies at Wp Bs / |W0^2 - Wp^2|, the stop edges at 1; so e = (s1-p)(p+s2)/(p Bs) below and
+    (p-s2)(p+s1)/(p Bs) above.
+    """
     s1, s2 = prewarped(stopping.low), prewarped(stopping.high)
     width = prewarped_difference(stopping.low, stopping.high)
-    p1, p2 = prewarped(below.high), prewarped(above.low)
-    e1 = prewarped_difference(below.high, stopping.low) * (p1 + s2) / (p1 * width)
-    e2 = prewarped_difference(stopping.high, above.low) * (p2 + s1) / (p2 * width)
-    passes = (
-        Edge(below.item, "high", below.high, e1, _allowed(below)),
-        Edge(above.item, "low", above.low, e2, _allowed(above)),
+    if not width > 0.0:
+        return None
+
+    def stretch_below(w: float) -> float:
+        difference = prewarped_difference(w, stopping.low)
+        return difference * (1.0 + s2 / prewarped(w)) / width if w > 0.0 else math.inf
+
+    def stretch_above(w: float) -> float:
+        return prewarped_difference(stopping.high, w) * (1.0 + s1 / prewarped(w)) / width
+
+    inner = 1.0 / (1.0 + max(stretch_below(below.low), stretch_above(above.high)))
+    transitions = [
+        _transition(
+            stopping,
+            _pass_edge(below, "high", peak),
+            _stop_edge(stopping, "low", peak),
+            stretch_below(below.high),
+            math.inf,
+            inner,
+        ),
+        _transition(
+            stopping,
+            _pass_edge(above, "low", peak),
+            _stop_edge(stopping, "high", peak),
+            stretch_above(above.low),
+            math.inf,
+            inner,
+        ),
+    ]
+    return _checked("band-stop", transitions, math.sqrt(s1 * s2), width, peak)
+
+
+def _above(stops: list[MaskBand], peak: float) -> list[tuple[MaskBand, Edge, float]]:
+    """Each stop band above a pass band with its near edge and where its attenuation ceases to be asked."""
+    return _as_far_as_asked([(band, _stop_edge(band, "low", peak), band.high) for band in stops])
+
+
+def _below(stops: list[MaskBand], peak: float) -> list[tuple[MaskBand, Edge, float]]:
+    """The same for stop bands below a pass band, again from it outward."""
+    return _as_far_as_asked([(band, _stop_edge(band, "high", peak), band.low) for band in reversed(stops)])
+
+
+def _as_far_as_asked(outward: list[tuple[MaskBand, Edge, float]]) -> list[tuple[MaskBand, Edge, float]]:
+    """The far ends moved outward over a stop band that touches and is no shallower."""
+    found: list[tuple[MaskBand, Edge, float]] = []
+    for band, edge, far in reversed(outward):
+        if found and found[-1][1].w == far and found[-1][1].db >= edge.db:
+            far = found[-1][2]
+        found.append((band, edge, far))
+    return found
+
+
+def _transition(
+    stopping: MaskBand, pass_edge: Edge, stop_edge: Edge, e: float, until: float, inner: float
+) -> Transition:
+    return Transition(
+        pass_edge,
+        stop_edge,
+        e,
+        until,
+        stop_edge.excess / pass_edge.excess,
+        inner if stopping.relative else 0.0,
     )
-    e = min(e1, e2)
-    side: Side = "low" if e1 <= e2 else "high"
-    w = stopping.low if side == "low" else stopping.high
-    stops = [Edge(stopping.item, side, w, e, _asked(stopping, peak))]
-    return _checked("band-stop", stops, passes, math.sqrt(s1 * s2), width, peak)
 
 
 def _checked(
-    kind: Kind,
-    stops: list[Edge],
-    passes: tuple[Edge, ...],
-    centre: float,
-    width: float,
-    peak: float,
+    kind: Kind, transitions: list[Transition], centre: float, width: float, peak: float
 ) -> Selectivity | None:
-    """The selectivity, unless an edge leaves no transition or an attenuation is below the ripple."""
-    allowed = max(edge.excess for edge in passes)
-    if any(not edge.e > 0.0 for edge in (*stops, *(passes if kind == "band-stop" else ()))):
+    """The selectivity, unless edges or levels are out of order, or a stop edge is at 0 or Nyquist itself."""
+    if not all(0.0 < one.e < math.inf and one.discrimination > 0.0 for one in transitions):
         return None
-    # A stop edge at Nyquist asks for nothing: the bilinear transform has its zeros there.
-    stops = [edge for edge in stops if math.isfinite(edge.e)]
-    if not stops or any(edge.excess <= allowed for edge in stops) or not width > 0.0:
-        return None
-    return Selectivity(kind, tuple(sorted(stops, key=lambda edge: edge.e)), passes, centre, width, peak)
+    ordered = tuple(sorted(transitions, key=lambda one: one.e))
+    nearest_decides = all(
+        one.until == math.inf and one.inner == 0.0 and one.discrimination <= ordered[0].discrimination
+        for one in ordered
+    )
+    return Selectivity(kind, ordered, centre, width, peak, nearest_decides)
 
 
-def _pass_edge(band: MaskBand, side: Side) -> Edge:
-    return Edge(band.item, side, band.high if side == "high" else band.low, 0.0, _allowed(band))
+def _pass_edge(band: MaskBand, side: Side, peak: float) -> Edge:
+    db = peak - (band.least or 0.0)
+    return Edge(band.item, side, band.high if side == "high" else band.low, db, excess(db))
 
 
-def _allowed(band: MaskBand) -> float:
-    return excess((band.most or 0.0) - (band.least or 0.0))
-
-
-def _asked(band: MaskBand, peak: float) -> float:
-    most = band.most if band.most is not None else math.inf
-    return excess(-most if band.relative else peak - most)
+def _stop_edge(band: MaskBand, side: Side, peak: float) -> Edge:
+    most = band.most or 0.0
+    db = -most if band.relative else peak - most
+    return Edge(band.item, side, band.high if side == "high" else band.low, db, excess(db))

@@ -20,12 +20,13 @@ AT_DC = Root(0.0, 0.0, pair=False)
 AT_NYQUIST = Root(math.pi, 0.0, pair=False)
 
 
-def to_digital(prototype: Prototype, selectivity: Selectivity, stop_edge: float, log_dc_gain: float) -> Design:
+def to_digital(
+    prototype: Prototype, selectivity: Selectivity, stop_edge: float, log_dc_gain: float
+) -> Design:
     """The digital filter of a prototype whose pass band ends at 1 and whose stop band starts at `stop_edge`.
 
-    Args:
-        log_dc_gain: ln of the prototype's gain at 0 against its peak; below 0 for an even order with ripple.
-            The peak is placed at the top of the mask's pass window.
+    `log_dc_gain` is ln of the prototype's gain at 0 over its peak, below 0 for an even order with ripple. The
+    peak is placed at the top of the mask's pass window.
     """
     poles = tuple(root for pole in prototype.poles for root in _poles(pole, selectivity, stop_edge))
     zeros = tuple(_zeros(prototype, selectivity, stop_edge))
@@ -94,7 +95,7 @@ def _mirrored(difference: float, centre: float) -> Iterator[Root]:
 def _band_images(scaled: complex, centre: float) -> tuple[complex, complex]:
     """Both roots of s^2 - scaled s + W0^2: the larger by the formula, the other as W0^2 over it."""
     half = 0.5 * scaled
-    root = cmath.sqrt(half * half - centre * centre)
+    root = cmath.sqrt((half - centre) * (half + centre))
     larger = half + root if abs(half + root) >= abs(half - root) else half - root
     return larger, centre * centre / larger
 

@@ -11,10 +11,17 @@ def prewarped(w: float) -> float:
 
 
 def prewarped_difference(low: float, high: float) -> float:
-    """tan(high/2) - tan(low/2) by sin(a - b) / (cos a cos b), exact for close edges; infinite at Nyquist."""
+    """tan(high/2) - tan(low/2) = sin((high - low)/2) / (cos(high/2) cos(low/2)), exact for close edges."""
     if high >= math.pi:
         return math.inf
     return math.sin(0.5 * (high - low)) / (math.cos(0.5 * high) * math.cos(0.5 * low))
+
+
+def prewarped_stretch(low: float, high: float) -> float:
+    """tan(high/2) / tan(low/2) - 1, exact for close edges; infinite from 0 and to Nyquist."""
+    if high >= math.pi or low <= 0.0:
+        return math.inf
+    return math.sin(0.5 * (high - low)) / (math.cos(0.5 * high) * math.sin(0.5 * low))
 
 
 def frequency(warped: float) -> float:

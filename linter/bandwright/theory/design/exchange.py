@@ -36,8 +36,8 @@ _INSET = 1e-3
 """Bands keep this share of pi/n away from one another and, for even lengths, from the zero at Nyquist."""
 _POINTS_BETWEEN = 4
 """Samples between two references, where the error has one lobe, or two while it moves."""
-_POINTS_AT_EDGE = 20
-"""Samples between a band edge and the nearest reference, where more lobes appear."""
+_POINTS_AT_EDGE = 8
+"""Samples between a band edge and the nearest reference; twice as many where the edge is none itself."""
 _NEAR = 1.2
 """From this ratio of peak to level on, a second parabola finds the top of each lobe."""
 _LEJA_DEGREE = 40
@@ -47,6 +47,8 @@ _LEJA_CANDIDATES = 8
 """Candidates for each of them."""
 _ROUGH = 0.3
 """How near the level comes to the peak in the designs that only give a start."""
+_COEFFICIENT_ERROR = 1e-7
+"""What rounding may add to E when the polynomial is turned into coefficients the fast way."""
 _ZERO = 1e-300
 _BLOCK = 1 << 16
 """Elements of one block of an evaluation: half a megabyte, which stays in the cache."""
@@ -62,7 +64,7 @@ class Exchange:
     level: float
     """No filter of this length has a smaller max|E|: above 1, none meets the mask."""
     peak: float
-    """max|E| of this filter as sampled: good to `CONVERGED` where converged, else to `SAMPLING`."""
+    """max|E| of this filter as sampled: good to twice `CONVERGED` where converged, else to some `SAMPLING`."""
     converged: bool
     steps: int
     interpolant: _Interpolant = field(repr=False)
@@ -80,18 +82,8 @@ class Exchange:
         return self.interpolant.problem.zeros(w) * self.interpolant.polynomial(w)
 
     def impulse_response(self) -> Floats:
-        """The coefficients, `taps` of them.
-
-        From a linear system at the references: interpolation would carry the noise of wide transitions,
-        where no reference holds the polynomial, into the bands.
-        """
-        problem, nodes = self.interpolant.problem, self.references
-        band = problem.band(nodes)
-        zeros = problem.zeros(nodes)
-        signs = np.where(np.arange(len(nodes)) % 2, -1.0, 1.0)
-        system = np.cos(np.outer(nodes, np.arange(len(nodes)))) * zeros[:, None]
-        system[:, -1] = -signs * problem.tolerance[band]
-        half = 0.5 * np.linalg.solve(system, problem.desired[band])[:-1]
+        """The coefficients, `taps` of them."""
+        half = 0.5 * self.interpolant.coefficients()
         half[0] *= 2.0
         if self.taps % 2:
             return np.concatenate([half[:0:-1], half])
@@ -105,15 +97,17 @@ def exchange(
 ) -> Exchange:
     """The filter of `taps` coefficients whose max|E| over the bands is least.
 
-    `bands` are disjoint and rising, as `amplitude_bands` gives them, with tolerances above 0; some have
-    width. `start` holds the references of a similar problem (rad/sample, any number). `decide` asks
-    whether max|E| can be at most 1: the exchange stops early, once this is known and peak / level is no
-    more than `decide`, and goes on beyond `CONVERGED` as long as it is not known.
+    `bands` are disjoint and rising, as `amplitude_bands` gives them, with tolerances above 0. `start` holds
+    the references of a similar problem (rad/sample, any number). `decide` asks whether max|E| can be at
+    most 1: the exchange stops early, once this is known and peak / level is no more than `decide`, and goes
+    on beyond `CONVERGED` as long as it is not known.
 
-    Raises ValueError for an even length where the mask forbids a zero at Nyquist.
+    Raises ValueError for an even length where the mask forbids a zero at Nyquist, and for bands of no width.
     """
     if taps % 2 == 0 and only_odd(bands):
         raise ValueError("an even length has gain 0 at half the sample rate, which the mask forbids")
+    if all(band.low == band.high for band in bands):
+        raise ValueError("the bands are single frequencies; at least one must have width")
     problem = _Problem(taps, bands)
     if start is not None:
         warm = _exchange(problem, start, CONVERGED, decide)
@@ -140,18 +134,17 @@ def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> 
 
 
 def _first_references(problem: _Problem, bands: Sequence[AmplitudeBand]) -> Floats:
-    """Leja points for low degrees; else half the degree's references, with Leja's share of new ones."""
+    """Leja points for low degrees; else the references of half the degree, with Leja's share of new ones."""
     if problem.degree <= _LEJA_DEGREE:
-        return problem.leja(problem.degree + 2)
-    even = 1 - problem.taps % 2
-    halvings = (problem.degree // _LEJA_DEGREE).bit_length()
+        return np.sort(problem.leja(problem.degree + 2))
     points = problem.leja(_LEJA_POINTS)
-    share = np.polyfit(np.arange(len(points)), np.cumsum(problem.band(points)[:, None] == np.arange(len(problem.low)), axis=0), 1)[0]
-    points = points[:1+(problem.degree >> halvings)]
+    share = problem.share(points)
+    halvings = (problem.degree // _LEJA_DEGREE).bit_length()
+    points = np.sort(points[: 2 + (problem.degree >> halvings)])
     for halving in range(halvings, 0, -1):
-        smaller = _Problem(2 * (problem.degree >> halving) + 1 + even, bands)
-        points = smaller.spread(np.sort(points), share)
-        points = _exchange(smaller, points, _ROUGH, 0.0).references
+        taps = 2 * (problem.degree >> halving) + 2 - problem.taps % 2
+        smaller = _Problem(taps, bands)
+        points = _exchange(smaller, smaller.spread(points, share), _ROUGH, 0.0).references
     return problem.spread(points, share)
 
 
@@ -184,29 +177,24 @@ class _Problem:
 
     def band(self, w: Floats) -> Indices:
         """The index of the band that each frequency lies in."""
-        return np.searchsorted(self.low, w, side="right") - 1
+        return np.asarray(np.searchsorted(self.low, w, side="right") - 1)
 
     def counts(self, w: Floats) -> Indices:
         """How many of the frequencies lie in each band."""
-        return np.bincount(self.band(w), minlength=len(self.low))
+        return np.asarray(np.bincount(self.band(w), minlength=len(self.low)))
 
     def zeros(self, w: Floats) -> Floats:
         """The factor Q that the length imposes."""
         return np.ones_like(w) if self.taps % 2 else np.cos(0.5 * w)
 
     def leja(self, count: int) -> Floats:
-        """As many frequencies as there are references, placed as an optimal filter's would be at first sight.
+        """Leja points (Leja 1957, from memory): each with the greatest product of distances to those before.
 
-        Leja points (Leja 1957, from memory): each one where the product of the distances in cos w to those
-        before is largest. They crowd where gaps between bands demand it, which uniform ones do not.
+        They crowd where gaps between the bands demand it, as references do, and uniform points do not.
         """
-        width = np.sum(self.high - self.low)
-        points = np.concatenate(
-            [
-                self._evenly(band, self._ends(band), 2 + int(_LEJA_CANDIDATES * count * share))
-                for band, share in enumerate((self.high - self.low) / width)
-            ]
-        )
+        widths = self.high - self.low
+        candidates = 2 + (_LEJA_CANDIDATES * count / widths.sum() * widths).astype(int)
+        points = np.concatenate([self._evenly(i, self._ends(i), n) for i, n in enumerate(candidates)])
         x = np.cos(points)
         logs = np.zeros(len(x))
         chosen = [0]
@@ -216,21 +204,29 @@ class _Problem:
                 chosen.append(int(np.argmax(logs)))
         return points[chosen]
 
+    def share(self, points: Floats) -> Floats:
+        """The share of each band in points that come one by one: the slope of its count."""
+        within = self.band(points)[:, None] == np.arange(len(self.low))
+        slopes: Floats = np.polyfit(np.arange(len(points)), np.cumsum(within, axis=0), 1)[0]
+        return slopes
+
     def spread(self, start: Floats, share: Floats | None = None) -> Floats:
         """As many references as are needed, as dense in each band as `start`.
 
         Those that `start` lacks go to the bands by `share`: the tolerances move a number of references
         from band to band that hardly grows with the degree.
         """
-        start = np.sort(start)
         band = self.band(start)
-        kept = [start[band == i] for i in range(len(self.low))]
         lacking = max(0, self.degree + 2 - len(start))
-        weights = self.counts(start) + (lacking * share if share is not None else 0.0)
-        counts = self._shares(weights)
+        weights = self.counts(start).astype(float)
+        if share is not None:
+            weights += lacking * share
         parts = []
-        for i, (points, count) in enumerate(zip(kept, counts, strict=True)):
-            parts.append(self._evenly(i, points if len(points) > 1 else self._ends(i), count))
+        for i, count in enumerate(self._shares(weights)):
+            ends = self._ends(i)
+            points = np.sort(np.clip(start[band == i], *ends))
+            points = points[np.diff(points, prepend=-1.0) > self._gap]
+            parts.append(self._evenly(i, points if len(points) > 1 else ends, count))
         return np.concatenate(parts)
 
     def _ends(self, band: int) -> Floats:
@@ -250,9 +246,10 @@ class _Problem:
         centre, radius = 0.5 * (mirrored_low + mirrored_high), 0.5 * (mirrored_high - mirrored_low)
         angles = np.arcsin(np.clip((points - centre) / radius, -1.0, 1.0))
         wanted = np.interp(np.linspace(0.0, len(points) - 1.0, count), np.arange(len(points)), angles)
-        w = centre + radius * np.sin(wanted)
-        w[w < low + 1e-3 * self._gap] = low
-        w[w > high - 1e-3 * self._gap] = high
+        w: Floats = centre + radius * np.sin(wanted)
+        # A reference beside an edge by a rounding error would be a second knot there.
+        w[:1] = np.where(w[:1] < low + 1e-3 * self._gap, low, w[:1])
+        w[-1:] = np.where(w[-1:] > high - 1e-3 * self._gap, high, w[-1:])
         return w
 
     def _shares(self, weights: Floats) -> Indices:
@@ -260,7 +257,7 @@ class _Problem:
         wanted = self.degree + 2
         room = np.where(self.high > self.low, wanted, 1)
         exact = weights * (wanted / weights.sum())
-        counts = np.minimum(exact.astype(np.intp), room)
+        counts: Indices = np.minimum(exact.astype(np.intp), room)
         while (missing := wanted - int(counts.sum())) > 0:
             open_ = np.flatnonzero(counts < room)
             order = open_[np.argsort(counts[open_] - exact[open_], kind="stable")]
@@ -288,7 +285,26 @@ class _Interpolant:
         # Signs alternate even at level 0, where the nodes' desired gains happen to be of that degree.
         self.errors = signs * (self.level or _ZERO)
         self._weights = signs * weights
-        self._values = (desired + self.errors * tolerance) / zeros
+        self._scale = tolerance / zeros
+        self._values = desired / zeros + self.errors * self._scale
+
+    def coefficients(self) -> Floats:
+        """P in cosines: its coefficients of cos kw, k = 0..degree."""
+        count = len(self.nodes) - 1
+        orders = np.arange(count)
+        cosines = np.cos(np.outer(self.nodes, orders))
+        samples = self.polynomial(np.asarray((orders + 0.5) * (math.pi / count)))
+        if np.all(np.isfinite(samples)):
+            # The discrete cosine transform of samples at Chebyshev nodes, by way of a full period.
+            spectrum = np.fft.fft(np.concatenate([samples, samples[::-1]]))[:count]
+            result: Floats = np.real(spectrum * np.exp(-0.5j * math.pi / count * orders)) / count
+            result[0] *= 0.5
+            if np.max(np.abs(cosines @ result - self._values) / self._scale) < _COEFFICIENT_ERROR:
+                return result
+        # Noise from wide transitions, where no node holds P; the linear system keeps it out of the bands.
+        system = np.column_stack([cosines, -np.sign(self.errors) * self._scale])
+        right = self._values - self.errors * self._scale
+        return np.asarray(np.linalg.solve(system, right)[:-1])
 
     def polynomial(self, w: Floats) -> Floats:
         """P = A / Q at the frequencies `w`; not finite where the sums cancel to nothing."""
@@ -311,7 +327,8 @@ class _Interpolant:
         """E at frequencies inside the bands."""
         band = self.problem.band(w)
         amplitude = self.problem.zeros(w) * self.polynomial(w)
-        return (amplitude - self.problem.desired[band]) / self.problem.tolerance[band]
+        error: Floats = (amplitude - self.problem.desired[band]) / self.problem.tolerance[band]
+        return error
 
 
 @dataclass(frozen=True, slots=True)
@@ -386,28 +403,34 @@ def _runs(interpolant: _Interpolant) -> _Runs:
 
 
 def _samples(problem: _Problem, nodes: Floats) -> tuple[Floats, Indices]:
-    """Frequencies that show every lobe of the error, nodes and band edges among them; where the nodes are."""
+    """Frequencies that show every lobe of the error, nodes and band edges among them; where the nodes are.
+
+    Beside the edges of bands they are denser by the square, as lobes are.
+    """
     knots = np.unique(np.concatenate([nodes, problem.low, problem.high]))
     node_knots = np.searchsorted(knots, nodes)
     is_node = np.zeros(len(knots), dtype=bool)
     is_node[node_knots] = True
     band = problem.band(knots)
     gaps = np.diff(knots)
-    spacing = math.pi / (problem.degree + 1)
-    finest = np.where(is_node[:-1] & is_node[1:], 0, np.minimum(_POINTS_AT_EDGE, gaps * (_POINTS_AT_EDGE / spacing)))
-    counts = np.maximum(np.maximum(_POINTS_BETWEEN, finest), gaps * (_POINTS_BETWEEN / (1.5 * spacing)))
-    counts = np.where(band[:-1] == band[1:], counts.astype(np.intp) + 1, 1)
+    at_low, at_high = knots[:-1] == problem.low[band[:-1]], knots[1:] == problem.high[band[1:]]
+    share = gaps * ((problem.degree + 1) / math.pi)
+    counts = np.where(at_low | at_high, _POINTS_AT_EDGE, _POINTS_BETWEEN)
+    counts = np.maximum(counts, share * (_POINTS_BETWEEN / 1.5)).astype(np.intp)
+    counts = np.where(is_node[:-1] & is_node[1:], counts, 2 * counts)
+    counts = np.where(band[:-1] == band[1:], counts + 1, 1)
     starts = np.concatenate([[0], np.cumsum(counts)])
-    w = np.empty(starts[-1] + 1)
-    offsets = np.arange(starts[-1]) - np.repeat(starts[:-1], counts)
-    w[:-1] = np.repeat(knots[:-1], counts) + offsets * np.repeat(gaps / counts, counts)
-    w[-1] = knots[-1]
-    return w, starts[node_knots]
+    of = np.repeat(np.arange(len(gaps)), counts)
+    part = (np.arange(starts[-1]) - starts[of]) / counts[of]
+    low_sided, high_sided = (at_low & ~at_high)[of], (at_high & ~at_low)[of]
+    both = (at_low & at_high)[of]
+    part[low_sided] = 1.0 - np.cos(0.5 * math.pi * part[low_sided])
+    part[high_sided] = np.sin(0.5 * math.pi * part[high_sided])
+    part[both] = 0.5 - 0.5 * np.cos(math.pi * part[both])
+    return np.append(knots[of] + gaps[of] * part, knots[-1]), starts[node_knots]
 
 
-def _refined(
-    interpolant: _Interpolant, w: Floats, sizes: Floats, tops: Indices
-) -> tuple[Floats, Floats]:
+def _refined(interpolant: _Interpolant, w: Floats, sizes: Floats, tops: Indices) -> tuple[Floats, Floats]:
     """The largest errors of the runs, those inside bands moved to the tops of parabolas."""
     points, largest = w[tops], sizes[tops]
     band = interpolant.problem.band(w)
@@ -423,6 +446,8 @@ def _refined(
         below, above = np.abs(interpolant.error(sides)).reshape(2, -1)
         shift = _top(step, step, below, largest[inner], above)
         _move(interpolant, points, largest, inner, points[inner] + shift)
+    if np.any(np.diff(points) <= 0.0):  # noise far from an optimum made two tops meet
+        return w[tops], sizes[tops]
     return points, largest
 
 
@@ -450,4 +475,5 @@ def _log_weights(x: Floats) -> Floats:
     factors = np.ones((-(-count // 16) * 16, count))
     np.abs(2.0 * np.subtract.outer(x, x), out=factors[:count])
     np.fill_diagonal(factors, 1.0)
-    return -np.log(factors.reshape(-1, 16, count).prod(axis=1)).sum(axis=0)
+    logs: Floats = -np.log(factors.reshape(-1, 16, count).prod(axis=1)).sum(axis=0)
+    return logs

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.quantities import Word
-from bandwright.faces.server.hovers.forecast import label
-from bandwright.faces.server.markdown import Part
+from bandwright.faces.forecast_table import label
+from bandwright.faces.markdown import Part
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.words import shown
 

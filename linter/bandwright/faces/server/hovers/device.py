@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from bandwright.bandfile.values import Block, Document
-from bandwright.faces.server.markdown import Part
+from bandwright.faces.markdown import Part
 
 
 def parts(document: Document, device: Block) -> list[Part]:

@@ -6,8 +6,8 @@ import math
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Path, Quantity
+from bandwright.faces.markdown import Part
 from bandwright.faces.server.hovers.relaxing import relaxing
-from bandwright.faces.server.markdown import Part
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.neighbours import Transition, transition
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from bandwright.bandfile.grammar import Key
-from bandwright.faces.server.markdown import Part
+from bandwright.faces.markdown import Part
 
 
 def parts(key: Key) -> list[Part]:
@@ -11,10 +11,10 @@ def parts(key: Key) -> list[Part]:
     facts = []
     if key.default is not None:
         facts.append(f"Default: `{key.default}`.")
-    if key.names:
-        facts.append(f"One of {', '.join(f'`{name}`' for name in key.names)}.")
-    if key.kind not in ("mapping", "list"):
-        facts.append(f"Example: `{key.path[-1]}: {key.example}`.")
     if not key.judged:
         facts.append("This release reads it and judges nothing by it.")
+    if key.names:
+        facts.append(f"One of {', '.join(f'`{name}`' for name in key.names)}.")
+    elif key.kind not in ("mapping", "list"):
+        facts.append(f"Example: `{key.path[-1]}: {key.example}`")
     return [key.doc, " ".join(facts)] if facts else [key.doc]

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Path, Quantity
+from bandwright.faces.markdown import Part
 from bandwright.faces.server.hovers.relaxing import relaxing
-from bandwright.faces.server.markdown import Part
 from bandwright.forecast.forecast import Forecast
 
 DIGITS = 4

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Quantity
-from bandwright.faces.server.markdown import Part
+from bandwright.faces.markdown import Part
 
 
 def parts(rate: Quantity) -> list[Part]:

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from bandwright.bandfile import grammar
-from bandwright.faces.server.hovers.forecast import certainty, label, number_format
-from bandwright.faces.server.markdown import Column, Part, table
+from bandwright.faces.forecast_table import certainty, label, number_format
+from bandwright.faces.markdown import Column, Part, table
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.structures import STRUCTURES
 from bandwright.forecast.types import Figure
-from bandwright.forecast.words import shown
+from bandwright.forecast.words import ESTIMATE, shown
 
 SHOWN_ONCE = ("direct-form-2", "direct-form-1", "direct-form-1-transposed", "direct-form-2-transposed")
 """These store the same coefficients; one of them stands for all."""
@@ -38,8 +38,11 @@ def parts(forecast: Forecast, name: str) -> list[Part]:
         columns.append(("enough", "left", [_enough(figure, has) for _, figure in needs]))
     own = next(at for at, (one, _) in enumerate(needs) if one == name)
     kind = "The sign is counted. " if form == "fixed" else "Significant bits of a floating-point number. "
-    return [*about, table(columns, own), kind + certainty((("bits", [figure for _, figure in needs]),))]
+    return [*about, table(columns, own), kind + certainty(figure for _, figure in needs)]
 
 
 def _enough(needed: Figure, has: int) -> str:
-    return "yes" if needed.high <= has else "no" if needed.low > has else "open"
+    """Whether `has` bits are enough, with the sign of an estimate where the figure's band leaves it open."""
+    if needed.low <= has < needed.high:
+        return ESTIMATE + ("yes" if needed.value <= has else "no")
+    return "yes" if needed.high <= has else "no"

@@ -1,23 +1,24 @@
-"""The transitions of a filter, in the words of its band file."""
+"""The gaps between pass and stop bands, in numbers and in the words of the band file."""
 
 from __future__ import annotations
 
 import itertools
-from typing import NamedTuple
+from dataclasses import dataclass
 
 from bandwright.bandfile.values import Filter, Path, Place
 from bandwright.forecast import bands
 from bandwright.forecast.types import Binding
 
 
-class Gap(NamedTuple):
-    """A transition between a pass and a stop band."""
+@dataclass(frozen=True, slots=True)
+class Gap:
+    """A transition between a pass and a stop band whose edges are both written."""
 
-    width: float
-    """rad/sample"""
-    low: str
-    """Its lower edge as written."""
-    high: str
+    low: float
+    """Its lower edge, rad/sample."""
+    high: float
+    low_written: str
+    high_written: str
     below: Path
     """Where the lower edge stands."""
     above: Path
@@ -25,9 +26,14 @@ class Gap(NamedTuple):
     """Which of the two is the stop band's edge."""
 
     @property
+    def width(self) -> float:
+        """rad/sample"""
+        return self.high - self.low
+
+    @property
     def facts(self) -> tuple[tuple[str, object], ...]:
-        """What sentences quote: `low` and `high`."""
-        return (("low", self.low), ("high", self.high))
+        """What sentences quote, by name."""
+        return (("low", self.low_written), ("high", self.high_written))
 
     @property
     def places(self) -> tuple[tuple[Place, str], ...]:
@@ -36,28 +42,22 @@ class Gap(NamedTuple):
 
 
 def gaps(filter: Filter) -> tuple[Gap, ...]:
-    """The transitions between neighbouring bands whose edges are written."""
+    """The transitions between neighbouring bands whose edges can be read."""
     found = []
     ordered = [band for band in bands.bands(filter) if band.kind != "bounds"]
     for before, after in itertools.pairwise(ordered):
         below, above = before.edge_path("high"), after.edge_path("low")
         low, high = filter.get(*below), filter.get(*above)
-        if (
-            before.kind == after.kind
-            or before.high is None
-            or after.low is None
-            or low is None
-            or high is None
-        ):
+        if before.kind == after.kind or before.high is None or after.low is None or not low or not high:
             continue
         stop = below if before.kind == "stop" else above
-        found.append(Gap(after.low - before.high, low.written, high.written, below, above, stop))
+        found.append(Gap(before.high, after.low, low.written, high.written, below, above, stop))
     return tuple(found)
 
 
 def narrowest(filter: Filter) -> Gap | None:
     """The narrowest transition, which sets the length of an FIR filter."""
-    return min(gaps(filter), default=None)
+    return min(gaps(filter), key=lambda gap: gap.width, default=None)
 
 
 def bound_by(filter: Filter, binding: Binding | None) -> Gap | None:

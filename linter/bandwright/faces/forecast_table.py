@@ -1,16 +1,16 @@
-"""What every family would take: the hover on a filter's name, its family, its order and its maxima."""
+"""What every family would take, as a title, a table and notes: the same words in editors and terminals."""
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 
-from bandwright.faces.server.markdown import Column, Part, Table, table
+from bandwright.faces.markdown import Column, Part, Table, table
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.questions import Question
 from bandwright.forecast.structures import DEFAULT_STRUCTURE
 from bandwright.forecast.types import Figure
-from bandwright.forecast.words import shown, time_unit
+from bandwright.forecast.words import ESTIMATE, shown, time_unit
 
 
 def parts(forecast: Forecast) -> list[Part]:
@@ -69,19 +69,26 @@ def _able(forecast: Forecast) -> list[Candidate]:
 def _verdict(forecast: Forecast, able: Sequence[Candidate]) -> str:
     """What becomes of the filter as asked, in one sentence."""
     chosen = forecast.chosen
+    if chosen is not None and forecast.within(chosen) is not False:
+        keeps = "keeps every maximum" if forecast.within(chosen) else "is near a maximum"
+        return f"{label(chosen)} {keeps}."
+    asked = (
+        f"{label(chosen)} breaks {_maxima(forecast, forecast.over(chosen))}" if chosen else "none asked for"
+    )
     keeping = next((one for one in able if forecast.within(one)), None)
-    otherwise = f"{label(keeping)} keeps every maximum" if keeping is not None else ""
-    if chosen is None:
-        return f"nothing that it asks for can meet it; {otherwise or f'{label(able[0])} is the smallest'}."
-    within = forecast.within(chosen)
-    if within:
-        return f"{label(chosen)} keeps every maximum."
-    if within is None:
-        return f"{label(chosen)} is near a maximum, and the exact figure is not known yet."
-    if not otherwise:
-        smallest = "" if able[0] is chosen else f"; {label(able[0])} is the smallest"
-        otherwise = f"no family keeps every maximum{smallest}"
-    return f"{label(chosen)} is over its maximum ({forecast.why_not(chosen)}); {otherwise}."
+    if keeping is not None:
+        return f"{asked}; {label(keeping)} keeps every maximum."
+    never = [name for name in forecast.over(able[0]) if all(name in forecast.over(one) for one in able)]
+    none = f"no family keeps {_maxima(forecast, never)}" if never else "no family keeps every maximum"
+    return f"{none}; {label(able[0])} is the smallest."
+
+
+def _maxima(forecast: Forecast, names: Sequence[str]) -> str:
+    """Maxima with their values: "order 16 and delay 25 ms"."""
+    limits = [(name, forecast.maximum(name)) for name in names]
+    return " and ".join(
+        f"{name} {forecast.in_words(name, limit)}" for name, limit in limits if limit is not None
+    )
 
 
 def _table(forecast: Forecast, able: Sequence[Candidate]) -> Table:
@@ -108,44 +115,28 @@ def _short(name: str) -> str:
 
 def _note(forecast: Forecast, able: Sequence[Candidate]) -> str:
     """What the columns mean, and how sure their figures are."""
-    structures = dict.fromkeys(
-        one.structure or DEFAULT_STRUCTURE[one.kind] for one in able if bits(forecast, one)
-    )
+    needs = {one.structure or DEFAULT_STRUCTURE[one.kind]: bits(forecast, one) for one in able}
+    structures = " or ".join(f"`{name}`" for name, figure in needs.items() if figure is not None)
     kind = "bits with the sign" if number_format(forecast) == "fixed" else "significant bits"
-    columns = "Multiplications per sample" + (
-        f"; {kind} for {' or '.join(f'`{name}`' for name in structures)}. " if structures else ". "
-    )
-    return columns + certainty(
-        (
-            ("orders", [one.order for one in able]),
-            ("lengths", [one.taps for one in able]),
-            ("bits", [bits(forecast, one) for one in able]),
-        )
-    )
+    columns = "Multiplications per sample" + (f"; {kind} for {structures}. " if structures else ". ")
+    figures = [(one.taps, bits(forecast, one)) for one in able]
+    return columns + certainty(figure for pair in figures for figure in pair)
 
 
-def certainty(named: Sequence[tuple[str, Sequence[Figure | int | None]]]) -> str:
-    """A sentence that says which of the figures are estimates: "Orders are computed, bits estimated (~)." """
-    there = [(name, [one for one in figures if one is not None]) for name, figures in named]
-    estimated = [
-        name
-        for name, figures in there
-        if any(isinstance(one, Figure) and one.certainty == "estimated" for one in figures)
-    ]
-    sure = [name for name, figures in there if figures and name not in estimated]
-    if not estimated:
-        return "Every figure is computed."
-    said = f"{' and '.join(sure)} are computed, " if sure else ""
-    verb = "" if sure else "are "
-    sentence = f"{said}{' and '.join(estimated)} {verb}estimated where marked ~."
-    return sentence[0].upper() + sentence[1:]
+def certainty(figures: Iterable[Figure | None]) -> str:
+    """A sentence on how sure the figures of a table are."""
+    if any(figure is not None and figure.certainty == "estimated" for figure in figures):
+        return f"{ESTIMATE} marks an estimate; everything else is computed."
+    return "Every figure is computed."
 
 
 def _unable(forecast: Forecast) -> Iterator[str]:
     """The families that can't meet the mask, with the reason; those with the same reason together."""
     reasons: dict[str, list[str]] = {}
+    linear = forecast.mask is not None and forecast.mask.phase == "linear"
     for one in forecast.candidates:
-        if one.order is None and one.taps is None:
+        # Who asks for linear phase knows that it leaves FIR filters only.
+        if one.order is None and one.taps is None and not (linear and one.kind == "iir"):
             reasons.setdefault(one.why_not, []).append(one.family)
     for reason, families in reasons.items():
-        yield f"Without {', '.join(families)}: {reason}."
+        yield f"Not {' or '.join(families)}: {reason}."
