@@ -32,7 +32,9 @@ SETTINGS = {
     "window.commandCenter": False,
     "git.enabled": False,
     "files.autoSave": "off",
+    "breadcrumbs.enabled": False,
     "editor.minimap.enabled": False,
+    "editor.stickyScroll.enabled": False,
     "editor.accessibilitySupport": "off",
     "editor.fontSize": 14,
 }

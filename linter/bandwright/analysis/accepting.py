@@ -25,10 +25,12 @@ class Entry:
     up_to: Quantity | None
     until: str | None
     reason: str
+    readable: bool
+    """False where its limits are written but can't be read; then it accepts nothing."""
 
 
 def entries(filter: Filter) -> Iterator[Entry]:
-    """The entries whose finding and limits can be read."""
+    """The entries whose finding can be read."""
     indices = sorted(
         {
             path[1]
@@ -39,7 +41,7 @@ def entries(filter: Filter) -> Iterator[Entry]:
     for index in indices:
         at = ("accepted", index)
         name = filter.text(*at, "finding")
-        if name is None or filter.is_unknown(*at, "up_to") or filter.is_unknown(*at, "until"):
+        if name is None:
             continue
         yield Entry(
             index,
@@ -47,6 +49,7 @@ def entries(filter: Filter) -> Iterator[Entry]:
             filter.quantity(*at, "up_to"),
             filter.text(*at, "until"),
             filter.text(*at, "reason") or "",
+            not any(filter.is_unknown(*at, key) for key in ("up_to", "until", "reason")),
         )
 
 
@@ -68,7 +71,7 @@ def judge(filter: Filter, analysis: Analysis, today: str) -> Iterator[tuple[Hit,
 
 
 def _covers(entry: Entry, hit: Hit, today: str, rate_hz: float | None) -> bool:
-    if entry.finding != hit.id or not entry.reason or hit.id.startswith(NEVER):
+    if entry.finding != hit.id or not entry.readable or not entry.reason or hit.id.startswith(NEVER):
         return False
     if entry.until is not None and entry.until < today:
         return False
@@ -99,13 +102,22 @@ def _problem(entry: Entry, analysis: Analysis, today: str) -> Hit | None:
         return Hit("accepted/expired", until, (("finding", entry.finding), ("until", entry.until)))
     hit = next((hit for hit in analysis.hits if hit.id == entry.finding), None)
     if hit is None:
-        return Hit("accepted/nothing-to-accept", place, (("finding", entry.finding),))
-    if not entry.reason or hit.figure is None:
+        nothing = Hit("accepted/nothing-to-accept", place, (("finding", entry.finding),))
+        return nothing if _was_looked_for(entry.finding, analysis) else None
+    if not entry.readable or not entry.reason or hit.figure is None:
         return None
     facts = (("finding", entry.finding), ("value", _in_words(*hit.figure)))
     if entry.up_to is None:
         return Hit("accepted/no-limit", place, facts)
     return Hit("accepted/over-its-limit", Place(("accepted", entry.index, "up_to")), facts)
+
+
+def _was_looked_for(id: str, analysis: Analysis) -> bool:
+    """Whether the filter could be judged for this finding: all that it needs is known."""
+    needs = RULES[id].needs
+    if any(analysis.filter.is_unknown(*key.split(".")) for key in needs):
+        return False
+    return analysis.forecast.mask is not None or "bands" not in needs
 
 
 def _in_words(value: float, unit: str) -> str:

@@ -462,6 +462,7 @@ class BlockReader:
 _EITHER: Final[dict[tuple[str, ...], tuple[str, str]]] = {
     ("bands", "*", "pass"): ("ripple", "gain"),
     ("bands", "*", "stop"): ("attenuation", "gain"),
+    ("bands", "*", "bounds", "gain"): ("min", "max"),
 }
 """Mappings that must hold one key of two."""
 _FINDING: Final = re.compile(r"[a-z]+(?:-[a-z]+)*/[a-z0-9]+(?:-[a-z0-9]+)*")
@@ -493,7 +494,7 @@ def _elsewhere(where: Where, name: str) -> str | None:
     """The mapping that a key belongs in which stands in the wrong one."""
     for room in (where, *(("filter", "device") if where == "top" else ())):
         for path in grammar.ROWS[room]:
-            if path[-1] == name:
+            if path[-1] == name != "*":
                 outer = [part for part in path[:-1] if part != "*"]
                 return outer[-1] if outer else room
     return None

@@ -147,12 +147,22 @@ def _edges(kind: str) -> tuple[Key, ...]:
 
 
 def _bounds(kind: str, *sides: str) -> tuple[Key, ...]:
+    """The rows of a gain window: of a pass or stop band it is whole, of bounds either side may be missing."""
     band = ("bands", "*", kind)
     window = "The gain window itself, counted from 0 dB, in place of a ripple or an attenuation."
     docs = {"min": (_GAIN_MIN, "-0.2 dB"), "max": (_GAIN_MAX, "0.1 dB")}
     return (
         Key((*band, "gain"), "mapping", window, "{min: -0.2 dB, max: 0.1 dB}"),
-        *(Key((*band, "gain", side), "quantity", *docs[side], dimension="gain") for side in sides),
+        *(
+            Key(
+                (*band, "gain", side),
+                "quantity",
+                *docs[side],
+                dimension="gain",
+                required=kind != "bounds",
+            )
+            for side in sides
+        ),
     )
 
 

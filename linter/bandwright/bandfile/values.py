@@ -2,7 +2,7 @@
 
 Two filters that say the same are equal, wherever they stand in the file, so an analysis is kept when
 only places change. The value of a `Setting` is of the kind that `grammar.KEYS` names for its path:
-a `Quantity`, an `int`, a `str` (name, text, date), a tuple of those, or `UNKNOWN`.
+a `Quantity`, an `int`, a `float`, a `str` (name, text, date), a tuple of those, or `UNKNOWN`.
 """
 
 from __future__ import annotations

@@ -19,7 +19,8 @@ from bandwright.forecast.questions import Answers, CoefficientBits, Question
 from bandwright.forecast.settle import settled
 from bandwright.forecast.structures import STRUCTURES
 from bandwright.forecast.types import Figure, computed
-from bandwright.theory.closed_form import bits, iir, polynomials, response
+from bandwright.theory.closed_form import bits as bit_theory
+from bandwright.theory.closed_form import iir, polynomials, response
 from bandwright.theory.closed_form.selectivity import Selectivity, selectivity
 from bandwright.theory.closed_form.types import Design
 
@@ -126,13 +127,13 @@ class Forecast:
         row = STRUCTURES.get(structure)
         if row is None or row.kind != one.kind or self.mask is None:
             return None
-        form: bits.NumberFormat = "floating" if number_format == "floating" else "fixed"
+        form: bit_theory.NumberFormat = "floating" if number_format == "floating" else "fixed"
         if one.taps is not None:
             return self._tap_bits(one.taps, form)
         design = self.design(one)
         if design is None or one.order is None:
             return None
-        predict = bits.cascade_bits if row.stores == "sections" else bits.direct_form_bits
+        predict = bit_theory.cascade_bits if row.stores == "sections" else bit_theory.direct_form_bits
         predicted = predict(design, self.mask, form)
         if predicted is None:
             return None
@@ -142,12 +143,10 @@ class Forecast:
         figure = Figure(predicted.value, predicted.low, predicted.high, "estimated", "bits", question)
         return settled(figure, self.answers)
 
-    def _tap_bits(self, taps: Figure, form: bits.NumberFormat) -> Figure | None:
+    def _tap_bits(self, taps: Figure, form: bit_theory.NumberFormat) -> Figure | None:
         if self.mask is None:
             return None
-        if not hasattr(bits, "fir_bits"):
-            return None
-        predicted = bits.fir_bits(round(taps.value), self.mask, form)
+        predicted = bit_theory.fir_bits(round(taps.value), self.mask, form)
         return Figure(predicted.value, predicted.low, predicted.high, "estimated", "bits")
 
     def expanded(self, one: Candidate) -> tuple[list[float], list[float]] | None:

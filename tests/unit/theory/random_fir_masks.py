@@ -42,7 +42,7 @@ def two_bands(seed: int) -> Iterator[Mask]:
 
 
 def many_bands(seed: int, narrowest: float, widest: float) -> Iterator[Mask]:
-    """3 to 5 bands, one ripple, similar attenuations, transitions of `narrowest` to `widest` cycles/sample."""
+    """3 to 5 bands, one ripple, similar stops; transitions from `narrowest` to `widest` cycles/sample."""
     source = np.random.default_rng(seed)
     while True:
         count = int(source.integers(3, 6))

@@ -49,6 +49,8 @@ _ROUGH = 0.3
 """How near the level comes to the peak in the designs that only give a start."""
 _COEFFICIENT_ERROR = 1e-7
 """What rounding may add to E when the polynomial is turned into coefficients the fast way."""
+_WORTHWHILE = 1e-3
+"""The share by which a level must rise for a reference to move to another band."""
 _ZERO = 1e-300
 _BLOCK = 1 << 16
 """Elements of one block of an evaluation: half a megabyte, which stays in the cache."""
@@ -64,7 +66,7 @@ class Exchange:
     level: float
     """No filter of this length has a smaller max|E|: above 1, none meets the mask."""
     peak: float
-    """max|E| of this filter as sampled: good to twice `CONVERGED` where converged, else to some `SAMPLING`."""
+    """max|E| of this filter as sampled: good to 2 `CONVERGED` where converged, else to some `SAMPLING`."""
     converged: bool
     steps: int
     interpolant: _Interpolant = field(repr=False)
@@ -110,14 +112,14 @@ def exchange(
         raise ValueError("the bands are single frequencies; at least one must have width")
     problem = _Problem(taps, bands)
     if start is not None:
-        warm = _exchange(problem, start, CONVERGED, decide)
+        warm = _exchange(problem, problem.spread(start), CONVERGED, decide)
         if warm.converged or decide * warm.level >= warm.peak:
             return warm
     return _exchange(problem, _first_references(problem, bands), CONVERGED, decide)
 
 
 def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> Exchange:
-    interpolant = _Interpolant(problem, problem.spread(start))
+    interpolant = _balanced(_Interpolant(problem, start))
     for step in range(1, MAX_EXCHANGE_STEPS + 1):
         runs = _runs(interpolant)
         level, peak = abs(interpolant.level), float(runs.sizes.max())
@@ -131,6 +133,25 @@ def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> 
         if not abs(interpolant.level) > level:
             break
     return outcome
+
+
+def _balanced(interpolant: _Interpolant) -> _Interpolant:
+    """References moved from band to neighbouring band as long as that raises the level.
+
+    The exchange itself would carry each of them over a whole band, one lobe a step.
+    """
+    problem, nodes = interpolant.problem, interpolant.nodes
+    counts = problem.counts(nodes)
+    moves = np.eye(len(counts), dtype=np.intp)
+    moves = np.diff(moves, axis=0)
+    while True:
+        trials = [counts + sign * move for move in moves for sign in (1, -1)]
+        trials = [trial for trial in trials if problem.holds(trial)]
+        others = [_Interpolant(problem, problem.placed(nodes, trial)) for trial in trials]
+        best = max(others, key=lambda other: abs(other.level), default=interpolant)
+        if not abs(best.level) > (1.0 + _WORTHWHILE) * abs(interpolant.level):
+            return interpolant
+        interpolant, counts = best, problem.counts(best.nodes)
 
 
 def _first_references(problem: _Problem, bands: Sequence[AmplitudeBand]) -> Floats:
@@ -204,6 +225,10 @@ class _Problem:
                 chosen.append(int(np.argmax(logs)))
         return points[chosen]
 
+    def holds(self, counts: Indices) -> bool:
+        """Whether so many references fit into the bands."""
+        return bool(np.all((counts >= 0) & ((counts <= 1) | (self.high > self.low))))
+
     def share(self, points: Floats) -> Floats:
         """The share of each band in points that come one by one: the slope of its count."""
         within = self.band(points)[:, None] == np.arange(len(self.low))
@@ -216,13 +241,17 @@ class _Problem:
         Those that `start` lacks go to the bands by `share`: the tolerances move a number of references
         from band to band that hardly grows with the degree.
         """
-        band = self.band(start)
         lacking = max(0, self.degree + 2 - len(start))
         weights = self.counts(start).astype(float)
         if share is not None:
             weights += lacking * share
+        return self.placed(start, self._shares(weights))
+
+    def placed(self, start: Floats, counts: Indices) -> Floats:
+        """So many references in each band, as dense there as `start` is from place to place."""
+        band = self.band(start)
         parts = []
-        for i, count in enumerate(self._shares(weights)):
+        for i, count in enumerate(counts):
             ends = self._ends(i)
             points = np.sort(np.clip(start[band == i], *ends))
             points = points[np.diff(points, prepend=-1.0) > self._gap]

@@ -165,9 +165,8 @@ class _Search:
             step = self._taps_per_decade * abs(decades[last])
             if len(probed) > 1:
                 moved, changed = last - probed[-2], decades[last] - decades[probed[-2]]
-                step = max(
-                    step, min(abs(moved / changed * decades[last]) if changed else math.inf, 2 * abs(moved))
-                )
+                flatter = abs(moved * decades[last] / changed) if changed else math.inf
+                step = max(step, min(flatter, 2.0 * abs(moved)))
             target = math.ceil(last + math.copysign(step, decades[last]))
         low = self._low()
         target = min(max(target, low), best - 1)
