@@ -38,18 +38,13 @@ for _, finding in ipairs(vim.diagnostic.get(0)) do
 end
 return found"""
 
-# A user may replace the selection in which choices come up; this one notes them and takes the wanted one.
+# Choices come up in a selection that a user may replace; this one takes the entry of the wanted title.
 CHOOSE = """
 local wanted = ...
-vim.g.offered = {}
 vim.ui.select = function(items, options, choose)
-  local titles, index = {}, nil
-  for i, item in ipairs(items) do
-    titles[i] = options.format_item(item)
-    if titles[i] == wanted then index = i end
+  for index, item in ipairs(items) do
+    if options.format_item(item) == wanted then return choose(item, index) end
   end
-  vim.g.offered = titles
-  choose(items[index], index)
 end"""
 
 
@@ -98,9 +93,6 @@ class Neovim:
     def choose(self, title: str) -> None:
         """The next selection that comes up is answered with the entry of this title."""
         self.editor.exec_lua(CHOOSE, title)
-
-    def offered(self) -> list[str]:
-        return list(self.editor.vars["offered"])
 
     def text(self) -> str:
         return "\n".join(self.editor.current.buffer[:])

@@ -1,10 +1,8 @@
-"""The server finds what the command finds, and finds it however the text came about."""
+"""The server finds what the command finds, in every file of the demo and the corpus."""
 
 from __future__ import annotations
 
 import json
-import random
-import re
 import subprocess
 import time
 from collections.abc import Iterator
@@ -13,18 +11,16 @@ from typing import Any
 
 import pytest
 
-import bandwright
-from bandwright.analysis.types import Finding
-from lsp_client import SERVE, Client
+from lsp_client import PATIENCE_S, SERVE, Client
 
 ROOT = Path(__file__).resolve().parents[2]
 FILES = sorted(
     [*(ROOT / "linter/bandwright/demo").glob("*.bands.yaml"), *(ROOT / "tests/corpus").rglob("*.bands.yaml")]
 )
-URI = "file:///crane/hoist.bands.yaml"
+NOT_UTF_8 = ("latin-1", "utf-16", "utf-32")
+"""What an editor makes of these bytes is its own affair."""
+
 SEVERITIES = {"error": 1, "warning": 2, "information": 3, "hint": 4}
-EDITS = 500
-"""In one session; every tenth state is compared."""
 
 
 @pytest.fixture(scope="module")
@@ -35,3 +31,55 @@ def client() -> Iterator[Client]:
     assert client.shut_down() == 0
     assert client.errors() == ""
     assert not [message for message in client.received if message.get("method") == "window/logMessage"]
+
+
+def of_command(file: Path) -> list[tuple[object, ...]]:
+    """The findings of `bandwright check` that are not accepted: place, severity, id and message."""
+    command = [*SERVE[:-1], "check", "--as", "json", str(file)]
+    done = subprocess.run(command, capture_output=True, timeout=PATIENCE_S * 6, check=False)
+    return [
+        (
+            (found["line"] - 1, found["column"] - 1, found["end_line"] - 1, found["end_column"] - 1),
+            SEVERITIES[found["severity"]],
+            found["id"],
+            found["message"],
+        )
+        for found in json.loads(done.stdout)["findings"]
+        if not found["accepted"]
+    ]
+
+
+def of_server(published: list[dict[str, Any]]) -> list[tuple[object, ...]]:
+    return [
+        (
+            (
+                found["range"]["start"]["line"],
+                found["range"]["start"]["character"],
+                found["range"]["end"]["line"],
+                found["range"]["end"]["character"],
+            ),
+            found["severity"],
+            found["code"],
+            found["message"],
+        )
+        for found in published
+    ]
+
+
+def test_there_are_files_to_agree_on() -> None:
+    assert len(FILES) > 10
+
+
+@pytest.mark.parametrize(
+    "file", [file for file in FILES if not file.name.startswith(NOT_UTF_8)], ids=lambda f: f.name
+)
+def test_server_and_command_find_the_same(client: Client, file: Path) -> None:
+    uri, expected = file.as_uri(), of_command(file)
+    client.open(uri, file.read_bytes().decode("utf-8"))
+    found = of_server(client.diagnostics(uri, 1))
+    deadline = time.monotonic() + PATIENCE_S * 3
+    while found != expected and time.monotonic() < deadline:  # exact figures come one by one
+        found = of_server(client.diagnostics(uri, 1))
+    assert found == expected
+    client.notify("textDocument/didClose", {"textDocument": {"uri": uri}})
+    assert client.diagnostics(uri, None) == []

@@ -109,7 +109,7 @@ class _Editor:
         end = _LINE_END.search(document.text)
         self.line_end = end[0] if end else "\n"
 
-    # ------------------------------------------------------------------------------------------- helpers
+    # ------------------------------------------------------------------------------------------- looking
 
     def replace(self, span: Span, text: str) -> TextEdit:
         return TextEdit(in_document(self.document, self.block, span), text)

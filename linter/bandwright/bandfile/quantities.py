@@ -326,12 +326,13 @@ def round_outward(value: float, direction: Literal["up", "down"], start: float |
     """The number that a person would write for the least change from `start` to `value`.
 
     It lies at or beyond `value` in `direction`, and has the fewest significant digits, from two, with
-    which the change grows by no more than a quarter: from 25 to 25.57 this gives 25.6, since 26 would
-    nearly double the change. Without `start` it has three digits.
+    which the change grows by no more than a quarter, or by no more than a quarter per cent of the value:
+    from 25 to 25.57 this gives 25.6, since 26 would nearly double the change, and from 0.4 to 0.40012 it
+    gives 0.401. Without `start` it has three digits.
     """
     if value == 0 or not math.isfinite(value):
         return value
-    allowed = math.inf if start is None else abs(value - start) / 4
+    allowed = math.inf if start is None else max(abs(value - start) / 4, abs(value) / 400)
     for digits in range(3 if start is None else 2, 17):
         mantissa, _, power = f"{value:.{digits - 1}e}".partition("e")
         steps, exponent = int(mantissa.replace(".", "")), int(power) - digits + 1

@@ -354,3 +354,37 @@ def test_a_stop_band_counts_from_the_highest_gain_of_a_pass_band_that_begins_lat
         gains = [response.gain_db(design, 0.95 + 0.05 * i / 200) for i in range(201)]
         assert response.gain_db(design, 1.5) <= max(gains) - 40.0 + 1e-9
         assert max(gains) - min(gains) <= 3.0
+
+
+def test_orders_of_plain_masks_are_those_in_50_digits() -> None:
+    dice = random.Random(11)
+    checked = 0
+    while checked < 300:
+        kind = dice.choice(["low-pass", "high-pass", "band-pass", "band-stop"])
+        count = 2 if kind in ("low-pass", "high-pass") else 4
+        edges = tuple(sorted(pi * 10.0 ** dice.uniform(-4.0, -0.005) for _ in range(count)))
+        ripple, depth = 10.0 ** dice.uniform(-3.0, 0.5), dice.uniform(10.0, 200.0)
+        select = selectivity(reference.from_edges(kind, edges, ripple, depth))
+        if select is None:
+            continue
+        checked += 1
+        stretch = _exact_stretch(kind, edges)
+        ratio = reference.excess(depth) / reference.excess(ripple)
+        for name, family in FAMILIES.items():
+            exact = reference.real_order(name, 1 + stretch, ratio)
+            least = iir.least_order(family, select)
+            if exact * (2 if count == 4 else 1) > limits.MAX_IIR_ORDER:
+                assert least is None
+                continue
+            assert least is not None
+            assert least.prototype_order == math.ceil(exact)
+            assert abs(least.unrounded / (exact * (least.order // least.prototype_order)) - 1) < 1e-13
+
+
+def _exact_stretch(kind: str, edges: tuple[float, ...]) -> mpf:
+    """The ratio of stop edge to pass edge in the prototype, less 1, of the worse transition."""
+    w = [reference.prewarped(edge) for edge in edges]
+    if len(w) == 2:
+        return w[1] / w[0] - 1
+    (outer_low, low, high, outer_high), square, width = w, w[1] * w[2], w[2] - w[1]
+    return min(abs(edge**2 - square) / (edge * width) for edge in (outer_low, outer_high)) - 1

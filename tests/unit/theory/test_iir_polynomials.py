@@ -146,14 +146,14 @@ def test_the_sign_of_a_design_is_that_of_its_numerator() -> None:
 
 @pytest.mark.parametrize(
     ("name", "stop_edge", "order", "largest", "smallest"),
-    # Gain 0.99 to 1 up to 0.2 pi, 60 dB from the stop edge (in pi), the stop band met exactly: the figures of a
-    # widely taught comparison, from memory; recomputed here from scipy.signal.butter and cheby2.
+    # Gain 0.99 to 1 up to 0.2 pi, 60 dB from the stop edge (in pi), the stop band met exactly:
+    # figures often quoted, no source.
     [
         ("butterworth", 0.4, 12, 42.0, 0.0021),
         ("chebyshev_2", 0.24, 15, 115.0, 3.0e-4),
     ],
 )
-def test_coefficients_of_taught_designs(
+def test_coefficients_of_well_known_designs(
     name: str, stop_edge: float, order: int, largest: float, smallest: float
 ) -> None:
     mask = from_edges("low-pass", (0.2 * pi, stop_edge * pi), -20.0 * math.log10(0.99), 60.0)

@@ -55,7 +55,7 @@ def test_gain_is_that_of_scipy(kind: str, name: str) -> None:
 def test_group_delay_is_that_of_scipy(kind: str, name: str) -> None:
     design = _design(name, MASKS[kind])
     places = np.linspace(0.05, 3.1, 40)
-    # One section at a time: scipy's group delay of an expanded polynomial is only as good as its coefficients.
+    # Root by root: scipy's group delay of an expanded polynomial is only as good as its coefficients.
     delays = np.zeros(len(places))
     for roots, sign in ((design.zeros, 1.0), (design.poles, -1.0)):
         for root in roots:

@@ -49,6 +49,8 @@ _ROUGH = 0.3
 """How near the level comes to the peak in the designs that only give a start."""
 _COEFFICIENT_ERROR = 1e-7
 """What rounding may add to E when the polynomial is turned into coefficients the fast way."""
+BAL=4
+VERB=False
 _WORTHWHILE = 1e-3
 """The share by which a level must rise for a reference to move to another band."""
 _ZERO = 1e-300
@@ -119,7 +121,7 @@ def exchange(
 
 
 def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> Exchange:
-    interpolant = _balanced(_Interpolant(problem, start))
+    interpolant = _Interpolant(problem, start)
     for step in range(1, MAX_EXCHANGE_STEPS + 1):
         runs = _runs(interpolant)
         level, peak = abs(interpolant.level), float(runs.sizes.max())
@@ -132,6 +134,10 @@ def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> 
         interpolant = max(choices, key=lambda choice: abs(choice.level))
         if not abs(interpolant.level) > level:
             break
+        if step % BAL == 0 and peak > 2.0 * level:
+            was=interpolant
+            interpolant = _balanced(interpolant)
+            if VERB and was is not interpolant: print('balanced', abs(was.level), abs(interpolant.level))
     return outcome
 
 
