@@ -47,3 +47,6 @@ MAX_ANSWERS_KEPT = 4_096
 
 MAX_FIX_ROUNDS = 64
 """Rounds of remedies that keep the requirement; a round mends one finding of each block."""
+
+MAX_WORKER_DEATHS = 2
+"""How many workers may die of a question before it is left unanswered."""

@@ -50,8 +50,9 @@ def analyse_filter(filter: Filter, answers: Answers, memo: Memo) -> Analysis:
     case = Case(filter, Forecast(filter, answers))
     hits: list[Hit] = []
     waiting: dict[Question, list[str]] = {}
+    unknown = filter.is_unknown()
     for rule in RULES.values():
-        if rule.find is None or any(filter.is_unknown(*key.split(".")) for key in rule.needs):
+        if rule.find is None or (unknown and any(filter.is_unknown(*key.split(".")) for key in rule.needs)):
             continue
         try:
             hits += list(rule.find(case))

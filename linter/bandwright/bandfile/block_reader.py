@@ -336,9 +336,10 @@ class BlockReader:
             at = node.span
         found = resolved(node)
         if not row.judged and not (isinstance(found, Scalar) and found.text == str(row.default)):
-            self.fault(
-                "key/not-judged-yet", Place(path, "key"), (("key", _name(path)),), mends=(Mend(path, None),)
-            )
+            around = (grammar.ROWS[self.where].get(row.path[:end]) for end in range(1, len(row.path)))
+            if all(outer is None or outer.judged for outer in around):
+                mends = (Mend(path, None),)
+                self.fault("key/not-judged-yet", Place(path, "key"), (("key", _name(path)),), mends=mends)
         if isinstance(found, Lost):
             self.lose(path, node)
         elif isinstance(found, Scalar) and is_empty(found):

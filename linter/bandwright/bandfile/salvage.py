@@ -350,9 +350,8 @@ class _Salvage:
         """The segment with its key, if it has one, and a value that can't be read."""
         match = HEAD.match(self.lines[head])
         assert match is not None  # every part of the pattern is optional
-        value = span or Span(
-            head, min(match.end() + 1, len(self.lines[head])), head, len(self.lines[head].rstrip())
-        )
+        end = len(self.lines[head].rstrip())
+        value = span or Span(head, min(match.end() + 1, end), head, end)
         if match[2]:
             return Sequence([Lost(self.content(head))], self.content(head))
         if match[3] is None:

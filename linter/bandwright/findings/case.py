@@ -2,13 +2,20 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from typing import TypeVar
 
 from bandwright.bandfile.values import Filter
+from bandwright.forecast import bands, gaps
+from bandwright.forecast.bands import Band
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
+from bandwright.forecast.gaps import Gap
 from bandwright.forecast.questions import Question
 from bandwright.forecast.types import Figure
+
+T = TypeVar("T")
 
 CHOICE = (
     "bands",
@@ -38,6 +45,23 @@ class Case:
 
     filter: Filter
     forecast: Forecast
+    _kept: dict[str, object] = field(default_factory=dict, init=False, repr=False, compare=False)
+
+    @property
+    def bands(self) -> tuple[Band, ...]:
+        """Every band item whose kind can be told."""
+        return self.once("bands", lambda: bands.bands(self.filter))
+
+    @property
+    def gaps(self) -> tuple[Gap, ...]:
+        """The transitions between pass and stop bands."""
+        return self.once("gaps", lambda: gaps.gaps(self.filter))
+
+    def once(self, name: str, compute: Callable[[], T]) -> T:
+        """What several findings ask for, computed for the first of them."""
+        if name not in self._kept:
+            self._kept[name] = compute()
+        return self._kept[name]  # type: ignore[return-value] # each name is kept with one type only
 
     def chosen(self) -> Candidate | None:
         """The candidate that the filter will be built as (see `Forecast.chosen`).

@@ -99,7 +99,7 @@ def memory_over_maximum(case: Case) -> Iterator[Hit]:
 def _over(case: Case, name: str) -> Iterator[Hit]:
     filter, forecast = case.filter, case.forecast
     over = maxima.excess(case, name)
-    gap = gaps.bound_by(filter, over.candidate.binding) if over is not None else None
+    gap = gaps.bound_by(case.gaps, over.candidate.binding) if over is not None else None
     if over is None or gap is None:
         return
     exact = case.exact(over.figure)

@@ -12,7 +12,7 @@ from bandwright.findings import maxima
 from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.level import reaches_pass_band
 from bandwright.findings.rules import Hit, finding
-from bandwright.forecast import bands, gaps
+from bandwright.forecast import gaps
 from bandwright.forecast.bands import Band
 from bandwright.remedies import edges, relaxations
 
@@ -48,7 +48,7 @@ def sample_rate_not_positive(case: Case) -> Iterator[Hit]:
 )
 def below_zero(case: Case) -> Iterator[Hit]:
     """A negative edge."""
-    for path, _ in _edges(case.filter):
+    for path, _ in _edges(case):
         quantity = case.filter.quantity(*path)
         if quantity is not None and quantity.number < 0:
             yield Hit("edge/below-zero", Place(path), _named(case.filter, path))
@@ -72,7 +72,7 @@ def absurd_millihertz(case: Case) -> Iterator[Hit]:
     rate = filter.get("sample_rate")
     if rate_hz is None or rate is None:
         return
-    if (path := _millihertz_rate(filter)) is not None:
+    if (path := _millihertz_rate(case)) is not None:
         edge = filter.get(*path)
         facts = (
             ("rate", rate.written),
@@ -82,7 +82,7 @@ def absurd_millihertz(case: Case) -> Iterator[Hit]:
         yield Hit(
             "edge/absurd-millihertz", Place(("sample_rate",)), facts, "rate", ((Place(path), "this edge"),)
         )
-    for path, _ in _edges(filter):
+    for path, _ in _edges(case):
         quantity = filter.quantity(*path)
         if quantity is not None and quantity.unit == "mHz" and 0 < quantity.number * 1e6 <= rate_hz / 2:
             yield Hit(
@@ -99,12 +99,13 @@ def absurd_millihertz(case: Case) -> Iterator[Hit]:
             )
 
 
-def _millihertz_rate(filter: Filter) -> Path | None:
+def _millihertz_rate(case: Case) -> Path | None:
     """The first edge that lies above a sample rate in mHz, and below Nyquist if that is meant in MHz."""
+    filter = case.filter
     rate = filter.quantity("sample_rate")
     if rate is None or rate.unit != "mHz":
         return None
-    for path, _ in _edges(filter):
+    for path, _ in _edges(case):
         edge = filter.quantity(*path)
         hertz = quantities.hertz(edge) if edge is not None else None
         if hertz is not None and rate.number * 0.5e-3 < hertz <= rate.number * 0.5e6:
@@ -138,9 +139,9 @@ def _in_megahertz(filter: Filter, path: Path) -> str:
 def beyond_nyquist(case: Case) -> Iterator[Hit]:
     """An edge above half the sample rate; one for each band, and one for all where all are."""
     filter, rate = case.filter, case.filter.get("sample_rate")
-    if _millihertz_rate(filter) is not None:
+    if _millihertz_rate(case) is not None:
         return
-    found = [(path, w) for path, w in _edges(filter) if w is not None]
+    found = [(path, w) for path, w in _edges(case) if w is not None]
     beyond = [path for path, w in found if w > NYQUIST]
     whole = len(found) > 1 and not filter.is_unknown("bands")
     if whole and len(beyond) == len(found) and not any(_normalised(filter, path) for path in beyond):
@@ -209,7 +210,7 @@ def _normalised(filter: Filter, path: Path) -> bool:
 )
 def from_above_to(case: Case) -> Iterator[Hit]:
     """A band whose edges are the wrong way round, or equal."""
-    for band in _in_range(case.filter):
+    for band in _in_range(case):
         if band.low is None or band.high is None or band.low < band.high:
             continue
         low, high = (case.filter.get(*band.edge_path(side)) for side in ("low", "high"))
@@ -237,7 +238,7 @@ def from_above_to(case: Case) -> Iterator[Hit]:
 )
 def bands_out_of_order(case: Case) -> Iterator[Hit]:
     """A band that lies wholly below the one before it."""
-    for before, after in _neighbours(case.filter):
+    for before, after in _neighbours(case):
         if _below(after, before):
             yield Hit(
                 "edge/bands-out-of-order",
@@ -266,7 +267,7 @@ def bands_out_of_order(case: Case) -> Iterator[Hit]:
 def bands_overlap(case: Case) -> Iterator[Hit]:
     """Neighbours that share frequencies, or touch where one of them passes."""
     filter = case.filter
-    for before, after in _neighbours(filter):
+    for before, after in _neighbours(case):
         if before.high is None or after.low is None or _below(after, before) or after.low > before.high:
             continue
         if after.low == before.high and before.kind == after.kind == "stop":
@@ -333,7 +334,7 @@ def shape_not_judged_yet(case: Case) -> Iterator[Hit]:
     allowed = [one for one in forecast.candidates if one.allowed]
     if not allowed or forecast.selectivity is not None or any(one.kind == "fir" for one in allowed):
         return
-    if {"pass", "stop"} <= kinds and not reaches_pass_band(case.filter):
+    if {"pass", "stop"} <= kinds and not reaches_pass_band(case):
         yield Hit("edge/shape-not-judged-yet", Place(("bands",), "key"))
 
 
@@ -353,19 +354,18 @@ def shape_not_judged_yet(case: Case) -> Iterator[Hit]:
 )
 def transition_narrow(case: Case) -> Iterator[Hit]:
     """A transition that makes every filter long, of a filter that keeps its maxima all the same."""
-    forecast, filter = case.forecast, case.filter
-    chosen = case.chosen()
+    forecast, chosen = case.forecast, case.chosen()
     if chosen is None or not maxima.keeps_all(case):
         return
     scale = 2 if forecast.selectivity is not None and forecast.selectivity.doubles else 1
     elliptic = forecast.candidate("elliptic")
     if elliptic is not None and elliptic.least_order is not None:
-        gap = gaps.bound_by(filter, elliptic.binding)
+        gap = gaps.bound_by(case.gaps, elliptic.binding)
         if gap is not None and elliptic.least_order > NARROW_ORDER * scale:
             facts = (*gap.facts, ("order", elliptic.least_order))
             yield Hit("edge/transition-narrow", Place(gap.stop), facts, "", gap.places)
     elif chosen.taps is not None and case.exceeds(chosen.taps, NARROW_TAPS):
-        gap, exact = gaps.narrowest(filter), case.exact(chosen.taps)
+        gap, exact = gaps.narrowest(case.gaps), case.exact(chosen.taps)
         if gap is not None:
             taps = exact if exact is not None else chosen.taps.value
             form = "linear" if exact is not None else "about"
@@ -378,12 +378,12 @@ def transition_narrow(case: Case) -> Iterator[Hit]:
             )
 
 
-def _edges(filter: Filter) -> Iterator[tuple[Path, float | None]]:
+def _edges(case: Case) -> Iterator[tuple[Path, float | None]]:
     """The path of every edge that is written, with its frequency in rad/sample where that can be told."""
-    for band in bands.bands(filter):
+    for band in case.bands:
         for side, w in (("low", band.low), ("high", band.high)):
             path = band.edge_path(side)
-            if filter.get(*path) is not None:
+            if case.filter.get(*path) is not None:
                 yield path, w
 
 
@@ -393,18 +393,18 @@ def _named(filter: Filter, path: Path) -> tuple[tuple[str, object], ...]:
     return (("kind", path[2]), ("edge", setting.written if setting is not None else ""))
 
 
-def _in_range(filter: Filter) -> Iterator[Band]:
+def _in_range(case: Case) -> Iterator[Band]:
     """The bands whose edges can be read and lie between 0 Hz and Nyquist."""
-    for band in bands.bands(filter):
+    for band in case.bands:
         if band.low is not None and band.high is not None and 0.0 <= band.low <= NYQUIST >= band.high >= 0.0:
             yield band
 
 
-def _neighbours(filter: Filter) -> Iterator[tuple[Band, Band]]:
+def _neighbours(case: Case) -> Iterator[tuple[Band, Band]]:
     """Each two pass or stop bands that follow one another in the file."""
     ordered = [
         band
-        for band in _in_range(filter)
+        for band in _in_range(case)
         if band.kind != "bounds" and band.low is not None and band.high is not None and band.low < band.high
     ]
     yield from itertools.pairwise(ordered)

@@ -9,7 +9,6 @@ from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Filter, Path, Place, Quantity, Setting
 from bandwright.findings.case import Case
 from bandwright.findings.rules import Find, Hit, finding
-from bandwright.forecast import bands
 from bandwright.forecast.bands import Band
 from bandwright.remedies import levels
 
@@ -22,7 +21,7 @@ MOST_STOP_FACTOR = 10.0
 
 def _those(id: str) -> Find:
     """The slips of one kind."""
-    return lambda case: (hit for hit in _slips(case.filter) if hit.id == id)
+    return lambda case: (hit for hit in _slips(case) if hit.id == id)
 
 
 negative_attenuation = finding(
@@ -91,15 +90,20 @@ looks_like_decibels = finding(
 )(_those("level/looks-like-decibels"))
 
 
-def _slips(filter: Filter) -> Iterator[Hit]:
+def _slips(case: Case) -> tuple[Hit, ...]:
     """What is wrong with the levels, each told once."""
+    return case.once("slips", lambda: tuple(_found(case)))
+
+
+def _found(case: Case) -> Iterator[Hit]:
+    filter = case.filter
     for index, kind in filter.band_kinds():
         band = ("bands", index, kind)
         if kind == "pass":
             yield from _ripple(filter, (*band, "ripple"))
         if kind == "stop":
             yield from _attenuation(filter, (*band, "attenuation"))
-        yield from _gain(filter, (*band, "gain"), kind)
+        yield from _gain(case, (*band, "gain"), kind)
 
 
 def _ripple(filter: Filter, path: Path) -> Iterator[Hit]:
@@ -129,7 +133,8 @@ def _attenuation(filter: Filter, path: Path) -> Iterator[Hit]:
         yield Hit("level/looks-linear", Place(path), facts, "attenuation")
 
 
-def _gain(filter: Filter, path: Path, kind: str) -> Iterator[Hit]:
+def _gain(case: Case, path: Path, kind: str) -> Iterator[Hit]:
+    filter = case.filter
     low, high = (*path, "min"), (*path, "max")
     least, most = filter.quantity(*low), filter.quantity(*high)
     for side, level in ((low, least), (high, most)):
@@ -139,7 +144,7 @@ def _gain(filter: Filter, path: Path, kind: str) -> Iterator[Hit]:
     if least is not None and most is not None:
         yield from _window(filter, path, kind, least, most)
     elif most is not None and kind == "stop":
-        yield from _stop_gain(filter, high, most)
+        yield from _stop_gain(case, high, most)
 
 
 def _window(filter: Filter, path: Path, kind: str, least: Quantity, most: Quantity) -> Iterator[Hit]:
@@ -159,7 +164,8 @@ def _window(filter: Filter, path: Path, kind: str, least: Quantity, most: Quanti
         yield Hit("level/looks-linear", place, (*words, ("meant", meant)), "window", other)
 
 
-def _stop_gain(filter: Filter, path: Path, most: Quantity) -> Iterator[Hit]:
+def _stop_gain(case: Case, path: Path, most: Quantity) -> Iterator[Hit]:
+    filter = case.filter
     setting = _written(filter, path)
     if most.unit == "dB" and 0 < most.number < 1:
         meant = quantities.show_quantity(Quantity(most.number, "x"))
@@ -168,7 +174,7 @@ def _stop_gain(filter: Filter, path: Path, most: Quantity) -> Iterator[Hit]:
     elif most.number == 0 and most.unit in ("x", "%"):
         yield Hit("level/no-room", Place(path), (("written", setting),), "zero")
     elif most.unit in ("x", "%") and quantities.linear(most) >= max(
-        MOST_STOP_FACTOR, _highest_pass_gain(filter)
+        MOST_STOP_FACTOR, _highest_pass_gain(case)
     ):
         yield _in_factors(filter, path, most, "stop")
 
@@ -182,9 +188,9 @@ def _in_factors(filter: Filter, path: Path, level: Quantity, form: str) -> Hit:
     return Hit("level/looks-like-decibels", Place(path), facts, form)
 
 
-def _highest_pass_gain(filter: Filter) -> float:
+def _highest_pass_gain(case: Case) -> float:
     """The highest gain that a pass band allows, as a factor."""
-    tops = [band.most for band in bands.bands(filter) if band.kind == "pass" and band.most is not None]
+    tops = [band.most for band in case.bands if band.kind == "pass" and band.most is not None]
     return max((math.pow(10.0, top / 20.0) for top in tops if top < math.inf), default=1.0)
 
 
@@ -205,10 +211,10 @@ def _written(filter: Filter, path: Path) -> str:
 )
 def stop_above_pass(case: Case) -> Iterator[Hit]:
     """A stop band that allows the gain that a pass band may have; told where nothing else is wrong."""
-    filter, lowest = case.filter, _lowest_pass_band(case.filter)
-    if lowest is None or any(True for _ in _slips(filter)):
+    filter, lowest = case.filter, _lowest_pass_band(case)
+    if lowest is None or _slips(case):
         return
-    for band in _reaching(filter):
+    for band in _reaching(case):
         stop, passed = band.most or 0.0, lowest.least or 0.0
         facts = (
             ("stop", quantities.show(stop, "gain")),
@@ -222,22 +228,22 @@ def stop_above_pass(case: Case) -> Iterator[Hit]:
         yield Hit("level/stop-above-pass", place, facts, form, related)
 
 
-def reaches_pass_band(filter: Filter) -> bool:
+def reaches_pass_band(case: Case) -> bool:
     """Whether some stop band allows the gain that a pass band may have."""
-    return any(True for _ in _reaching(filter))
+    return any(True for _ in _reaching(case))
 
 
-def _reaching(filter: Filter) -> Iterator[Band]:
-    lowest = _lowest_pass_band(filter)
-    for band in bands.bands(filter):
+def _reaching(case: Case) -> Iterator[Band]:
+    lowest = _lowest_pass_band(case)
+    for band in case.bands:
         most = band.most if band.kind == "stop" else None
         if lowest is not None and most is not None and most >= (lowest.least or 0.0):
             yield band
 
 
-def _lowest_pass_band(filter: Filter) -> Band | None:
+def _lowest_pass_band(case: Case) -> Band | None:
     """The pass band whose gain may be the lowest."""
-    floors = [band for band in bands.bands(filter) if band.kind == "pass" and band.least is not None]
+    floors = [band for band in case.bands if band.kind == "pass" and band.least is not None]
     return min(floors, key=lambda band: band.least or 0.0, default=None)
 
 

@@ -53,6 +53,10 @@ def keeps_all(case: Case) -> bool:
     Raises:
         Waiting: an answer decides it that is not there yet.
     """
+    return case.once("keeps all", lambda: _keeps_all(case))
+
+
+def _keeps_all(case: Case) -> bool:
     chosen = case.chosen()
     if chosen is None:
         return True

@@ -50,7 +50,7 @@ def over_maximum(case: Case) -> Iterator[Hit]:
     if filter.count("order") is not None:
         yield Hit("order/over-maximum", Place(("order",)), facts, "pinned", _maximum(case), figure)
         return
-    gap = gaps.bound_by(filter, one.binding)
+    gap = gaps.bound_by(case.gaps, one.binding)
     if gap is None:
         return
     out = maxima.way_out(case, "order", over.limit)
@@ -74,7 +74,7 @@ def _beyond(case: Case) -> Iterator[Hit]:
     """No allowed family can be built, and one of them because its order is beyond all use."""
     if maxima.built(case) or case.forecast.mask is None:
         return
-    limit, gap = case.forecast.maximum("order"), gaps.narrowest(case.filter)
+    limit, gap = case.forecast.maximum("order"), gaps.narrowest(case.gaps)
     for one in case.forecast.candidates:
         if one.allowed and one.kind == "iir" and one.order is None and case.forecast.selectivity is not None:
             if gap is not None and limit is not None:
@@ -112,7 +112,7 @@ def _maximum(case: Case, name: str = "order") -> tuple[tuple[Place, str], ...]:
 )
 def taps_over_maximum(case: Case) -> Iterator[Hit]:
     """Every allowed family is FIR and needs more taps than the maximum."""
-    over, gap = maxima.excess(case, "taps"), gaps.narrowest(case.filter)
+    over, gap = maxima.excess(case, "taps"), gaps.narrowest(case.gaps)
     if over is None or gap is None:
         return
     exact = case.exact(over.figure)
@@ -157,7 +157,7 @@ def nothing_fits(case: Case) -> Iterator[Hit]:
     if not worst:
         return
     (_, name, value, limit), one = min(worst, key=lambda pair: pair[0])
-    gap = gaps.bound_by(case.filter, one.binding)
+    gap = gaps.bound_by(case.gaps, one.binding)
     if gap is None:
         return
     yield Hit(
@@ -189,7 +189,7 @@ def pinned_too_low(case: Case) -> Iterator[Hit]:
     if order is None or not found or any(one.least_order <= order for one in found if one.least_order):
         return
     one = min(found, key=lambda one: one.least_order or 0)
-    gap = gaps.bound_by(case.filter, one.binding)
+    gap = gaps.bound_by(case.gaps, one.binding)
     if gap is not None:
         facts = (("order", order), ("family", title(one.family)), ("least", one.least_order), *gap.facts)
         yield Hit("order/pinned-too-low", Place(("order",)), facts, "", gap.places)
@@ -227,7 +227,7 @@ def one_less_is_near(case: Case) -> Iterator[Hit]:
     chosen, step = case.chosen(), _step(case)
     if chosen is None or chosen.order is None or chosen.order_unrounded is None or chosen.tie:
         return
-    smaller, gap = chosen.order - step, gaps.bound_by(case.filter, chosen.binding)
+    smaller, gap = chosen.order - step, gaps.bound_by(case.gaps, chosen.binding)
     if gap is None or smaller < 1 or chosen.order_unrounded - smaller > NEAR * step:
         return
     if case.filter.count("order") is not None or not maxima.keeps_all(case):
@@ -277,7 +277,7 @@ def tie(case: Case) -> Iterator[Hit]:
     chosen = case.chosen()
     if chosen is None or not chosen.tie or chosen.order is None or case.filter.count("order") is not None:
         return
-    gap = gaps.bound_by(case.filter, chosen.binding)
+    gap = gaps.bound_by(case.gaps, chosen.binding)
     if gap is not None:
         facts = (("family", opening(chosen.family)), ("order", chosen.order))
         yield Hit("order/tie", Place(gap.stop), facts, "", gap.places)

@@ -44,7 +44,7 @@ def bands(filter: Filter) -> tuple[Band, ...]:
     return tuple(_band(filter, index, kind, rate_hz) for index, kind in filter.band_kinds())
 
 
-def mask(filter: Filter) -> Mask | None:
+def mask(filter: Filter, items_read: tuple[Band, ...] | None = None) -> Mask | None:
     """The mask that the band items make, or None where they don't make one.
 
     They don't where a part of them can't be read, where bands are out of order, overlap or leave the
@@ -53,7 +53,7 @@ def mask(filter: Filter) -> Mask | None:
     if filter.is_unknown("bands") or filter.is_unknown("sample_rate") or filter.is_unknown("phase"):
         return None
     items = []
-    for band in bands(filter):
+    for band in bands(filter) if items_read is None else items_read:
         if band.low is None or band.high is None or band.least is None or band.most is None:
             return None
         if not 0.0 <= band.low < band.high <= math.pi * (1.0 + 1e-12) or not band.least < band.most:

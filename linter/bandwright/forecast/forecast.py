@@ -40,7 +40,8 @@ class Forecast:
         self.filter = filter
         self.answers = answers
         self.sample_rate_hz = bands.sample_rate_hz(filter)
-        self.mask = bands.mask(filter)
+        self.bands = bands.bands(filter)
+        self.mask = bands.mask(filter, self.bands)
         self.selectivity: Selectivity | None = selectivity(self.mask) if self.mask is not None else None
         self._kept: dict[tuple[str, ...], object] = {}
         known = not (filter.is_unknown("family") or filter.is_unknown("structure"))
@@ -73,6 +74,9 @@ class Forecast:
 
     def choice_waits_for(self) -> Question | None:
         """The question whose answer could still make another candidate the chosen one; None if none could."""
+        return self._keep(("choice_waits_for",), self._choice_waits_for)
+
+    def _choice_waits_for(self) -> Question | None:
         chosen = self.chosen
         if chosen is None:
             return None
@@ -249,12 +253,16 @@ class Forecast:
         """Whether the candidate keeps all maxima; None while an estimate straddles one of them."""
         if one.order is None and one.taps is None:
             return False
-        limited = list(self._limited(one))
+        limited = self._limited(one)
         if any(figure.low > limit for _, figure, limit in limited):
             return False
         return True if all(figure.high <= limit for _, figure, limit in limited) else None
 
-    def _limited(self, one: Candidate) -> Iterator[tuple[str, Figure, float]]:
+    def _limited(self, one: Candidate) -> tuple[tuple[str, Figure, float], ...]:
+        """The figures of a candidate that have a maximum: name, figure, maximum."""
+        return self._keep(("limited", one.family), lambda: tuple(self._limits(one)))
+
+    def _limits(self, one: Candidate) -> Iterator[tuple[str, Figure, float]]:
         for name in MAXIMA:
             limit = self.maximum(name)
             figure = self.figure(one, name) if limit is not None else None

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import itertools
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from bandwright.bandfile.values import Filter, Path, Place
@@ -55,16 +56,16 @@ def gaps(filter: Filter) -> tuple[Gap, ...]:
     return tuple(found)
 
 
-def narrowest(filter: Filter) -> Gap | None:
+def narrowest(found: Sequence[Gap]) -> Gap | None:
     """The narrowest transition, which sets the length of an FIR filter."""
-    return min(gaps(filter), key=lambda gap: gap.width, default=None)
+    return min(found, key=lambda gap: gap.width, default=None)
 
 
-def bound_by(filter: Filter, binding: Binding | None) -> Gap | None:
+def bound_by(found: Sequence[Gap], binding: Binding | None) -> Gap | None:
     """The transition that sets the order of an IIR filter; the narrowest where that is not known."""
     if binding is not None:
         side = "from" if binding.side == "low" else "to"
-        for gap in gaps(filter):
+        for gap in found:
             if any(path[1] == binding.band and path[-1] == side for path in (gap.below, gap.above)):
                 return gap
-    return narrowest(filter)
+    return narrowest(found)

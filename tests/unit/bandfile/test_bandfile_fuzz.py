@@ -6,7 +6,7 @@ import random
 import re
 
 import pytest
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
 from bandwright.bandfile.blocks import locate
@@ -145,6 +145,7 @@ def test_mutations(seed: int) -> None:
 
 
 @settings(max_examples=100, deadline=None)
+@example([": ", ": "])
 @given(st.lists(st.sampled_from([*PIECES, *re.findall(r"[\w./]+|\n *", RICH)]), max_size=60))
 def test_heaps_of_pieces(pieces: list[str]) -> None:
     check(read("".join(pieces)))

@@ -103,3 +103,5 @@ def test_a_key_that_is_not_judged_yet_is_named_unless_it_says_the_default() -> N
     assert ids(read(ONE + "    phase: minimum\n")) == ["key/not-judged-yet value"]
     at = with_line(ONE, "stop: {from: 2 kHz,", "stop: {at: 2 kHz,")
     assert ids(read(at)) == ["key/not-judged-yet"]
+    bounds = with_line(ONE, "    bands:\n", "    bands:\n      - bounds: {at: 1 kHz, lag: {max: 8 deg}}\n")
+    assert ids(read(bounds)) == ["key/not-judged-yet"], "said once, of the outermost key"

@@ -49,10 +49,6 @@ _ROUGH = 0.3
 """How near the level comes to the peak in the designs that only give a start."""
 _COEFFICIENT_ERROR = 1e-7
 """What rounding may add to E when the polynomial is turned into coefficients the fast way."""
-BAL=4
-VERB=False
-_WORTHWHILE = 1e-3
-"""The share by which a level must rise for a reference to move to another band."""
 _ZERO = 1e-300
 _BLOCK = 1 << 16
 """Elements of one block of an evaluation: half a megabyte, which stays in the cache."""
@@ -114,14 +110,14 @@ def exchange(
         raise ValueError("the bands are single frequencies; at least one must have width")
     problem = _Problem(taps, bands)
     if start is not None:
-        warm = _exchange(problem, problem.spread(start), CONVERGED, decide)
+        warm = _exchange(problem, start, CONVERGED, decide)
         if warm.converged or decide * warm.level >= warm.peak:
             return warm
     return _exchange(problem, _first_references(problem, bands), CONVERGED, decide)
 
 
 def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> Exchange:
-    interpolant = _Interpolant(problem, start)
+    interpolant = _Interpolant(problem, problem.spread(start))
     for step in range(1, MAX_EXCHANGE_STEPS + 1):
         runs = _runs(interpolant)
         level, peak = abs(interpolant.level), float(runs.sizes.max())
@@ -134,30 +130,7 @@ def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> 
         interpolant = max(choices, key=lambda choice: abs(choice.level))
         if not abs(interpolant.level) > level:
             break
-        if step % BAL == 0 and peak > 2.0 * level:
-            was=interpolant
-            interpolant = _balanced(interpolant)
-            if VERB and was is not interpolant: print('balanced', abs(was.level), abs(interpolant.level))
     return outcome
-
-
-def _balanced(interpolant: _Interpolant) -> _Interpolant:
-    """References moved from band to neighbouring band as long as that raises the level.
-
-    The exchange itself would carry each of them over a whole band, one lobe a step.
-    """
-    problem, nodes = interpolant.problem, interpolant.nodes
-    counts = problem.counts(nodes)
-    moves = np.eye(len(counts), dtype=np.intp)
-    moves = np.diff(moves, axis=0)
-    while True:
-        trials = [counts + sign * move for move in moves for sign in (1, -1)]
-        trials = [trial for trial in trials if problem.holds(trial)]
-        others = [_Interpolant(problem, problem.placed(nodes, trial)) for trial in trials]
-        best = max(others, key=lambda other: abs(other.level), default=interpolant)
-        if not abs(best.level) > (1.0 + _WORTHWHILE) * abs(interpolant.level):
-            return interpolant
-        interpolant, counts = best, problem.counts(best.nodes)
 
 
 def _first_references(problem: _Problem, bands: Sequence[AmplitudeBand]) -> Floats:
@@ -231,10 +204,6 @@ class _Problem:
                 chosen.append(int(np.argmax(logs)))
         return points[chosen]
 
-    def holds(self, counts: Indices) -> bool:
-        """Whether so many references fit into the bands."""
-        return bool(np.all((counts >= 0) & ((counts <= 1) | (self.high > self.low))))
-
     def share(self, points: Floats) -> Floats:
         """The share of each band in points that come one by one: the slope of its count."""
         within = self.band(points)[:, None] == np.arange(len(self.low))
@@ -247,17 +216,13 @@ class _Problem:
         Those that `start` lacks go to the bands by `share`: the tolerances move a number of references
         from band to band that hardly grows with the degree.
         """
+        band = self.band(start)
         lacking = max(0, self.degree + 2 - len(start))
         weights = self.counts(start).astype(float)
         if share is not None:
             weights += lacking * share
-        return self.placed(start, self._shares(weights))
-
-    def placed(self, start: Floats, counts: Indices) -> Floats:
-        """So many references in each band, as dense there as `start` is from place to place."""
-        band = self.band(start)
         parts = []
-        for i, count in enumerate(counts):
+        for i, count in enumerate(self._shares(weights)):
             ends = self._ends(i)
             points = np.sort(np.clip(start[band == i], *ends))
             points = points[np.diff(points, prepend=-1.0) > self._gap]
@@ -347,15 +312,15 @@ class _Interpolant:
         result = np.empty_like(x)
         both = np.stack([self._values, np.ones_like(self._values)], axis=1)
         rows = max(1, _BLOCK // len(self._x))
-        for first in range(0, len(x), rows):
-            block = slice(first, first + rows)
-            difference = x[block, None] - self._x
-            hits = np.nonzero(difference == 0.0)
-            difference[hits] = 1.0
-            sums = np.divide(self._weights, difference, out=difference) @ both
-            with np.errstate(divide="ignore", invalid="ignore"):
+        with np.errstate(divide="ignore", invalid="ignore"):
+            for first in range(0, len(x), rows):
+                block = slice(first, first + rows)
+                difference = x[block, None] - self._x
+                sums = np.divide(self._weights, difference, out=difference) @ both
                 result[block] = sums[:, 0] / sums[:, 1]
-            result[first + hits[0]] = self._values[hits[1]]
+        lost = np.flatnonzero(~np.isfinite(result))
+        at, node = np.nonzero(x[lost, None] == self._x)
+        result[lost[at]] = self._values[node]
         return result
 
     def error(self, w: Floats) -> Floats:
