@@ -30,10 +30,10 @@ MAX_EXACT_TAPS = 2_000
 MAX_EXCHANGE_STEPS = 200
 """Steps of one exchange; most designs take fewer than ten."""
 
-MAX_LENGTH_TRIALS = 20
+MAX_LENGTH_TRIALS = 12
 """Exchanges for one length of an FIR filter: other places of floating windows, closer limits."""
 
-MAX_UNDECIDED_LENGTHS = 8
+MAX_UNDECIDED_LENGTHS = 4
 """FIR lengths that rounding leaves undecided before a search for the least one gives up."""
 
 MAX_SEARCHED_WORD_BITS = 160

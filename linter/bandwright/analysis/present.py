@@ -7,7 +7,7 @@ from collections.abc import Iterable, Iterator
 from bandwright.analysis import accepting
 from bandwright.analysis.places import device_line, span_of
 from bandwright.analysis.types import Analysis, Finding, Related
-from bandwright.bandfile.values import Document, Fault, Filter
+from bandwright.bandfile.values import Document, Fault, Filter, Place
 from bandwright.findings.catalogue import RULES
 from bandwright.findings.rules import SEVERITIES, Hit
 
@@ -53,12 +53,10 @@ def _hit_of(fault: Fault) -> Hit:
 
 def _finding(document: Document, index: int, hit: Hit, filter: Filter | None, accepted: bool) -> Finding:
     rule = RULES[hit.id]
-    related = [Related(span_of(document, index, place, filter), words) for place, words in hit.related]
-    if filter is not None:
-        brought = [
-            device_line(document, place, filter) for place in (hit.place, *(p for p, _ in hit.related))
-        ]
-        related += [Related(span, words) for line in brought if line for span, words in (line,)]
+    related = [_related(document, index, place, words, filter) for place, words in hit.related]
+    brought = device_line(document, hit.place, filter) if filter is not None else None
+    if brought is not None:
+        related.append(Related(*brought))
     block = document.blocks[index]
     return Finding(
         hit.id,
@@ -72,6 +70,15 @@ def _finding(document: Document, index: int, hit: Hit, filter: Filter | None, ac
         index,
         hit,
     )
+
+
+def _related(document: Document, index: int, place: Place, words: str, filter: Filter | None) -> Related:
+    """Another place of a finding; where the device brings its value, the device's own line."""
+    brought = device_line(document, place, filter) if filter is not None else None
+    if brought is not None:
+        span, origin = brought
+        return Related(span, f"{words}, {origin}")
+    return Related(span_of(document, index, place, filter), words)
 
 
 def _order(finding: Finding) -> tuple[object, ...]:

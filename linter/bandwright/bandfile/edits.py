@@ -184,7 +184,8 @@ class _Editor:
         marks = self.block.marks
         for end in range(len(path), -1, -1):
             if path[:end] in marks:
-                return marks[path[:end]].shared or (end < len(path) and self.is_alias(marks[path[:end]]))
+                inside = end < len(path) and (end > 0 or self.block.kind != "top")
+                return marks[path[:end]].shared or (inside and self.is_alias(marks[path[:end]]))
         return False
 
     def is_alias(self, marks: Marks) -> bool:

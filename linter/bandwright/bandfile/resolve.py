@@ -73,7 +73,7 @@ def linked(
         filters.append((index + 1, result.filter))
         faults[index].extend(result.faults)
     for index, (block, _) in enumerate(found):
-        if block.kind == "device" and used is not None and block.name not in used and block.marks:
+        if block.kind == "device" and used is not None and block.name and block.name not in used:
             unused = Fault(
                 "key/unused-device", Place((), "key"), (("device", block.name),), mends=(Mend((), None),)
             )

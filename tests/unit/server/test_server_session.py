@@ -65,6 +65,9 @@ filters:
     family: chebyshev-1
 """
 
+HEAD, DEVICES, FILTERS = re.split(r"(?=^devices|^filters)", TEXT, flags=re.M)
+DEVICES_LAST = HEAD + FILTERS + DEVICES
+
 SNIPPETS = (
     "\n",
     " ",
@@ -108,7 +111,7 @@ def edited(text: str, dice: random.Random) -> str:
                 lines[:first] + lines[second : second + 5] + lines[first:second] + lines[second + 5 :]
             )
         case 5:
-            return TEXT
+            return dice.choice((TEXT, DEVICES_LAST))
         case _:
             numbers = list(re.finditer(r"[0-9.]+(?= (?:Hz|kHz|dB|pi|ms))", text))
             if not numbers:

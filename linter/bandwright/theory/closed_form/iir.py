@@ -121,7 +121,9 @@ def reference_design(family: Family, selectivity: Selectivity, order: int) -> De
     log_g = found.log_g - 0.5 * max(0.0, found.log_ratio)
     prototype = family.prototype(prototype_order, found.e, log_g)
     dips_at_dc = family.PASS_EDGE_IS_FREE and prototype_order % 2 == 0
-    log_dc_gain = -0.5 * math.log1p(math.exp(log_g)) if dips_at_dc else 0.0
+    # The gain lies in the middle of the window, so that an absolute one leaves room above and below.
+    lost, allowed = math.log1p(math.exp(log_g)), math.log1p(math.exp(found.log_g))
+    log_dc_gain = -0.5 * lost * dips_at_dc - 0.25 * (allowed - lost)
     return transforms.to_digital(prototype, selectivity, 1.0 + found.e, log_dc_gain)
 
 

@@ -20,6 +20,7 @@ from bandwright.theory.design.fir_response import FirResponse
 
 _SLACK = 1e-6
 """The error of the check of a finished response, as a share of the tolerance."""
+_ZERO = 1e-200
 _INSETS = (1.0, 0.25, 0.0)
 """What a limit leaves out at each end of a transition, where the bands beside it hold the gain, in units of
 2 pi / taps: the width of a lobe. It is drawn closer where that does not do."""
@@ -113,7 +114,7 @@ class FirWindows:
         """Whether the response keeps the mask, its stop bands measured against its own highest gain."""
         for window in amplitude_bands(self._mask, self._tops, self._highest(response)) or ():
             least, most = response.range(window.low, window.high)
-            slack = _SLACK * window.tolerance
+            slack = _SLACK * window.tolerance + _ZERO
             if least < window.least - slack or most > window.most + slack:
                 return False
         return True
@@ -121,7 +122,7 @@ class FirWindows:
     def lower_reference(self, response: FirResponse) -> bool:
         """Count stop bands from the highest gain of this response; False where they do already."""
         highest = self._highest(response)
-        lower = highest < self._reference
+        lower = highest < self._reference * (1.0 - _SLACK)
         self._reference = min(highest, self._reference)
         return lower
 
