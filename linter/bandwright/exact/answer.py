@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from bandwright.forecast.questions import Answer, CoefficientBits, FirLength, Question
+from bandwright.forecast.questions import Answer, CoefficientBits, FirLength, Question, RoundedStability
 
 
 def answer(question: Question) -> Answer:
@@ -16,3 +16,7 @@ def answer(question: Question) -> Answer:
             from bandwright.exact import coefficient_bits
 
             return coefficient_bits.answer(question)
+        case RoundedStability():
+            from bandwright.exact import coefficient_bits
+
+            return coefficient_bits.stability(question)

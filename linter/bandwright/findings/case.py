@@ -12,7 +12,7 @@ from bandwright.forecast.bands import Band
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.gaps import Gap
-from bandwright.forecast.questions import Question
+from bandwright.forecast.questions import Answer, Question
 from bandwright.forecast.types import Figure
 
 T = TypeVar("T")
@@ -85,6 +85,16 @@ class Case:
         if figure.question is not None:
             raise Waiting(figure.question)
         return None
+
+    def answer(self, question: Question) -> Answer:
+        """The answer to a question that is no figure's.
+
+        Raises:
+            Waiting: there is none yet.
+        """
+        if question not in self.forecast.answers:
+            raise Waiting(question)
+        return self.forecast.answers[question]
 
     def exceeds(self, figure: Figure, limit: float) -> bool:
         """Whether the figure is above the limit, decided on its band where that is enough.

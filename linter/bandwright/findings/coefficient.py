@@ -12,6 +12,7 @@ from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.rules import Hit, finding
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
+from bandwright.forecast.questions import RoundedStabilityAnswer
 from bandwright.forecast.structures import STRUCTURES
 from bandwright.remedies import families, structures, words
 from bandwright.theory.closed_form.bits import NumberFormat, zero_scatter
@@ -133,6 +134,8 @@ def too_few_bits(case: Case) -> Iterator[Hit]:
     {
         "": "One direct form of order {order} needs {needed} bits and double precision has {has}:"
         " denominator up to {largest}, numerator down to {smallest}; sections need {sections}.",
+        "unstable": "One direct form of order {order} needs {needed} bits and is unstable in double precision,"
+        " {has}: denominator up to {largest}, numerator down to {smallest}; sections need {sections}.",
         "none": "One direct form of order {order} needs {needed} or more bits and double precision has {has}:"
         " denominator up to {largest}, numerator down to {smallest}; store sections.",
     },
@@ -157,7 +160,8 @@ def double_precision_not_enough(case: Case) -> Iterator[Hit]:
     )
     form = "none"
     if needed is not None:
-        form, facts = "", (*facts, ("sections", _bits_in_sections(case, stored)))
+        form = "" if _is_stable(case, stored) else "unstable"
+        facts = (*facts, ("sections", _bits_in_sections(case, stored)))
     figure = (bits.low if needed is None else needed, "")
     yield Hit(
         "coefficient/double-precision-not-enough",
@@ -246,6 +250,19 @@ def zeros_scatter(case: Case) -> Iterator[Hit]:
             ("distance", show_number(scatter.distance, 1)),
         )
         yield Hit("coefficient/zeros-scatter", _place(case.filter, stored), facts)
+
+
+def _is_stable(case: Case, stored: Stored) -> bool:
+    """Whether the filter stays stable in the word that there is.
+
+    Raises:
+        Waiting: that is not answered yet.
+    """
+    question = case.forecast.stability_when_rounded(
+        stored.one, stored.structure, stored.number_format, stored.has
+    )
+    answer = case.answer(question) if question is not None else None
+    return isinstance(answer, RoundedStabilityAnswer) and answer.stable
 
 
 def _on_circle(forecast: Forecast, angle: float) -> str:

@@ -15,9 +15,9 @@ from bandwright.bandfile.values import Filter
 from bandwright.forecast import bands, summary
 from bandwright.forecast.candidates import Candidate, candidates
 from bandwright.forecast.families import FAMILIES
-from bandwright.forecast.questions import Answers, CoefficientBits, Question
+from bandwright.forecast.questions import Answers, CoefficientBits, Question, RoundedStability
 from bandwright.forecast.settle import settled
-from bandwright.forecast.structures import STRUCTURES
+from bandwright.forecast.structures import STRUCTURES, StructureRow
 from bandwright.forecast.types import Figure, computed
 from bandwright.theory.closed_form import bits as bit_theory
 from bandwright.theory.closed_form import iir, polynomials, response
@@ -109,7 +109,9 @@ class Forecast:
         theory, select, order = FAMILIES[one.family].theory, self.selectivity, one.order
         if theory is None or select is None:
             return None
-        return self._keep(("design", one.family), lambda: iir.reference_design(theory, select, order))
+        return self._keep(
+            ("design", one.family), lambda: iir.reference_design(theory, select, order, centred=True)
+        )
 
     def bits(self, one: Candidate, structure: str, number_format: str) -> Figure | None:
         """Coefficient bits in a structure: mantissa bits (`floating`) or the word with its sign (`fixed`)."""
@@ -141,11 +143,19 @@ class Forecast:
         predicted = predict(design, self.mask, form)
         if predicted is None:
             return None
-        # The four direct forms store the same coefficients, so they share one question.
-        name = "cascade" if row.stores == "sections" else "direct-form-2"
-        question = CoefficientBits(self.mask, one.family, one.order, name, form)
+        question = CoefficientBits(self.mask, one.family, one.order, _asked_as(row), form)
         figure = Figure(predicted.value, predicted.low, predicted.high, "estimated", "bits", question)
         return settled(figure, self.answers)
+
+    def stability_when_rounded(
+        self, one: Candidate, structure: str, number_format: str, has: int
+    ) -> Question | None:
+        """The question whether an IIR candidate stays stable in a structure with words of `has` bits."""
+        row = STRUCTURES.get(structure)
+        if row is None or row.kind != one.kind or self.mask is None or one.order is None:
+            return None
+        form: bit_theory.NumberFormat = "floating" if number_format == "floating" else "fixed"
+        return RoundedStability(self.mask, one.family, one.order, _asked_as(row), form, has)
 
     def _tap_bits(self, taps: Figure, form: bit_theory.NumberFormat) -> Figure | None:
         if self.mask is None:
@@ -309,6 +319,11 @@ class Forecast:
         if key not in self._kept:
             self._kept[key] = compute()
         return self._kept[key]  # type: ignore[return-value] # each key is written with one type only
+
+
+def _asked_as(row: StructureRow) -> str:
+    """A structure's name in questions: the four direct forms store the same coefficients and share theirs."""
+    return "cascade" if row.stores == "sections" else "direct-form-2"
 
 
 def _of_taps(taps: Figure, cost: Callable[[int], float], unit: str) -> Figure:

@@ -52,7 +52,29 @@ class CoefficientBitsAnswer:
     bits: int | None
 
 
-Question = FirLength | CoefficientBits
-Answer = FirLengthAnswer | CoefficientBitsAnswer
+@dataclass(frozen=True, slots=True)
+class RoundedStability:
+    """Is the reference design of this IIR candidate still stable once its coefficients are rounded to `bits`?
+
+    Answered by `RoundedStabilityAnswer`.
+    """
+
+    mask: Mask
+    family: str
+    order: int
+    structure: str
+    number_format: Literal["floating", "fixed"]
+    bits: int
+
+
+@dataclass(frozen=True, slots=True)
+class RoundedStabilityAnswer:
+    """Whether every pole stays inside the unit circle under rounding to nearest."""
+
+    stable: bool
+
+
+Question = FirLength | CoefficientBits | RoundedStability
+Answer = FirLengthAnswer | CoefficientBitsAnswer | RoundedStabilityAnswer
 Answers = Mapping[Question, Answer]
 """The answers that there are so far. An answer never changes, so more of them only settle more."""

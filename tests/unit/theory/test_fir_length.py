@@ -249,6 +249,15 @@ def test_search_ends_at_the_limit(most_taps: int) -> None:
     assert {refusal.taps for refusal in found.refusals} == {most_taps - 1, most_taps}
 
 
+@pytest.mark.parametrize("most_taps", [40, 41])
+def test_search_for_an_odd_length_ends_at_the_limit(most_taps: int) -> None:
+    mask = Mask((stop_band(0.0, 1.0, 60.0), pass_band(1.1, math.pi, 0.1)))
+    found = least_length(mask, most_taps=most_taps)
+    assert found.taps is None
+    assert found.low > most_taps
+    assert [refusal.taps for refusal in found.refusals] == [most_taps - 1 + most_taps % 2]
+
+
 def test_limit_is_included() -> None:
     mask = Mask((pass_band(0.0, 1.0, 0.1), stop_band(1.4, math.pi, 60.0)))
     taps = least_length(mask).taps

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import asyncio
+import gc
 import traceback
 from collections.abc import Awaitable, Callable
 from functools import cached_property
@@ -106,6 +107,8 @@ class Server(LanguageServer):
         assert self.features
         for method, example in WARM_UP:
             self.protocol.structure({"jsonrpc": "2.0", "method": method, "params": example})
+        # What is loaded stays; going through it in search of garbage would hold up keystrokes.
+        gc.freeze()
 
     def failed(self, where: str, error: Exception) -> None:
         """Tell the client's log of a defect, once for each."""

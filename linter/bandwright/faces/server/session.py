@@ -137,10 +137,14 @@ class Session:
 
     def analysis(self, file: OpenFile, block: int, filter: Filter) -> Analysis:
         """The analysis of one filter of the file's document, with the answers that there are now."""
+        if self._is_open(file, block):
+            file.analyses[block] = analyse_filter(filter, Lookups(self.answers.kept), self.memo)
+        return file.analyses[block]
+
+    def _is_open(self, file: OpenFile, block: int) -> bool:
+        """Whether a filter is not analysed yet, or a question that its analysis left open is answered now."""
         known = file.analyses.get(block)
-        if known is None or any(question in self.answers.kept for question, _ in known.open):
-            known = file.analyses[block] = analyse_filter(filter, Lookups(self.answers.kept), self.memo)
-        return known
+        return known is None or any(question in self.answers.kept for question, _ in known.open)
 
     async def findings(self, file: OpenFile) -> tuple[Finding, ...]:
         """The findings of the file's newest version, as soon as they are there; none once it is closed."""
@@ -199,11 +203,12 @@ class Session:
         Filters that were edited come first. Where that takes more than a slice, what is known after the
         first one is published before the rest.
         """
-        ordered = sorted(document.filters, key=lambda each: each[0] in file.analyses)
+        to_do = [(block, filter) for block, filter in document.filters if self._is_open(file, block)]
+        to_do.sort(key=lambda each: each[0] in file.analyses)
         started = time.monotonic()
-        for done, (block, filter) in enumerate(ordered, 1):
+        for done, (block, filter) in enumerate(to_do, 1):
             self.analysis(file, block, filter)
-            if time.monotonic() - started > SLICE_S and done < len(ordered):
+            if time.monotonic() - started > SLICE_S and done < len(to_do):
                 if file.shown is None:
                     self._show(file, self._present(file, document))
                 await asyncio.sleep(0)

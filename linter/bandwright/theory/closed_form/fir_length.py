@@ -238,9 +238,10 @@ def ichige(step: Step) -> float:
 def equiripple_length(mask: Mask, bounded_transitions: bool = True) -> LengthEstimate | None:
     """The least length of a symmetric FIR filter that meets the mask, estimated.
 
-    Low-pass and high-pass by Ichige et al. (2000). Others by the step that needs most, times a factor fitted to the exact lengths of 1,300 random masks of 3 to 5 bands: wide transitions elsewhere
-    spare taps. `low` and `high` are the spread of the same masks, widened. None where no length will do,
-    because the mask contradicts itself.
+    Low-pass and high-pass by Ichige et al. (2000). Others by the step that needs most, times a factor
+    fitted to the exact lengths of 1,300 random masks of 3 to 5 bands: wide transitions elsewhere spare
+    taps. `low` and `high` are the spread over the same masks, widened; ripples of more than 4 dB, where
+    the formulas end, make them far apart. None where no length will do, because the mask contradicts itself.
     """
     bands = amplitude_bands(mask)
     if bands is None:

@@ -96,34 +96,36 @@ def order_meets(family: Family, selectivity: Selectivity, order: int) -> bool:
 
 def margin(family: Family, selectivity: Selectivity, order: int) -> Margin:
     """By how much the best prototype of this order (not the digital one) exceeds the mask."""
-    e = (
-        placement.best_edge(family, selectivity, order)
-        if placement.free(family, selectivity)
-        else selectivity.transitions[0].e
-    )
-    log_ratio = placement.log_excess(family, selectivity, order, e)
-    binding = selectivity.transitions[0]
+    transitions = selectivity.transitions
+    free = placement.free(family, selectivity)
+    e = placement.best_edge(family, selectivity, order) if free else transitions[0].e
     if selectivity.kind == "band-stop":
-        log_g = math.log(binding.stop_edge.excess) + log_ratio - family.log_discrimination(order, e)
+        log_g = min(math.log(one.pass_edge.excess) + family.log_fall(order, e, one.e) for one in transitions)
+        log_g -= family.log_discrimination(order, e)
     else:
-        log_g = math.log(binding.pass_edge.excess)
-    return Margin(log_ratio + _peak_loss(family, selectivity, order, e), log_g, e)
+        log_g = math.log(transitions[0].pass_edge.excess)
+    return Margin(placement.log_excess(family, selectivity, order, e), log_g, e)
 
 
-def reference_design(family: Family, selectivity: Selectivity, order: int) -> Design:
+def reference_design(
+    family: Family, selectivity: Selectivity, order: int, *, centred: bool = False
+) -> Design:
     """The design of this digital order with the spare margin shared equally, in log, by pass and stop band.
 
     With r the ratio of `Margin`, the pass-band excess is g / sqrt(r); the stop band then has sqrt(r) to
-    spare. An order too low for the mask gets all of the pass band, and misses the stop band.
+    spare. An order too low for the mask gets all of the pass band, and misses the stop band. The peak is
+    the top of the pass window; `centred` puts the gain in the middle of the window instead, so that a
+    window that is absolute leaves rounding errors room above and below.
     """
     prototype_order = order // 2 if selectivity.doubles else order
     found = margin(family, selectivity, prototype_order)
     log_g = found.log_g - 0.5 * max(0.0, found.log_ratio)
     prototype = family.prototype(prototype_order, found.e, log_g)
     dips_at_dc = family.PASS_EDGE_IS_FREE and prototype_order % 2 == 0
-    # The gain lies in the middle of the window, so that an absolute one leaves room above and below.
-    lost, allowed = math.log1p(math.exp(log_g)), math.log1p(math.exp(found.log_g))
-    log_dc_gain = -0.5 * lost * dips_at_dc - 0.25 * (allowed - lost)
+    ripple, window = math.log1p(math.exp(log_g)), math.log1p(math.exp(found.log_g))
+    log_dc_gain = -0.5 * ripple if dips_at_dc else 0.0
+    if centred:
+        log_dc_gain -= 0.25 * (window - ripple)
     return transforms.to_digital(prototype, selectivity, 1.0 + found.e, log_dc_gain)
 
 
@@ -152,13 +154,13 @@ def _searched(
 ) -> tuple[int, float, bool, float] | None:
     """Least order, real-valued order, tie and e, from an order on that no lower one can do; None if over."""
     most = limits.MAX_IIR_ORDER // (2 if selectivity.doubles else 1)
-    if real > 1.0 and all(one.until == math.inf and one.inner == 0.0 for one in selectivity.transitions):
+    plain = real > 1.0 and all(one.until == math.inf and one.inner == 0.0 for one in selectivity.transitions)
+    if plain and not _reaches_beyond_ripple(family, selectivity, order):
         level = placement.level_order(family, selectivity)
         if not level <= most:
             return None
-        if not _reaches_beyond_ripple(family, selectivity, order):
-            order = math.ceil(level * (1.0 - TIE))
-            return order, level, abs(level - order) <= TIE * level, margin(family, selectivity, order).e
+        order = math.ceil(level * (1.0 - TIE))
+        return order, level, abs(level - order) <= TIE * level, margin(family, selectivity, order).e
     while (found := margin(family, selectivity, order)).log_ratio < -NO_MARGIN:
         order += 1
         if order > most:
@@ -175,26 +177,6 @@ def _reaches_beyond_ripple(family: Family, selectivity: Selectivity, order: int)
     odd = order + 1 - order % 2
     nearest, farthest = selectivity.transitions[0], selectivity.transitions[-1]
     return family.lobes(odd, nearest.e, farthest.e) > 0.5 * (odd - 1)
-
-
-def _peak_loss(family: Family, selectivity: Selectivity, order: int, e: float) -> float:
-    """ln of what is left of the stop band's excess where it counts from a gain below the prototype's peak.
-
-    With m the least F^2 in the pass bands, the stop band has to reach g F^2 >= gs + (1 + gs) g m.
-    """
-    left = 1.0
-    for one in selectivity.transitions:
-        inner = one.inner * (1.0 + e) if selectivity.kind == "band-stop" else one.inner
-        if inner <= 0.0:
-            continue
-        lull = family.log_lull(order, e, inner) if inner < 1.0 else 0.0
-        reached = (
-            family.log_discrimination(order, e)
-            if selectivity.kind == "band-stop"
-            else (family.log_rise(order, e, one.e, one.until))
-        )
-        left = min(left, 1.0 - (1.0 + one.stop_edge.excess) * math.exp(lull - reached))
-    return math.log(left) if left > 0.0 else -math.inf
 
 
 def _unrounded(family: Family, selectivity: Selectivity, order: int, log_ratio: float) -> float:

@@ -2,14 +2,14 @@
 
 A family with ripple has, besides order and level, the place where its ripple begins. With one transition
 that place is given; with transitions that ask for different levels, or a stop band that ends before 0 or
-Nyquist, it is searched for. `rise` is the family's `log_rise`, or its `log_fall` for a band-stop: all it
-takes to see a band-stop is to swap pass and stop band.
+Nyquist, it is searched for. A band-stop is the same problem with pass and stop band swapped: its one stop
+band stands where the pass band of the others does, and F falls from there instead of rising.
 """
 
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from functools import partial
 from itertools import pairwise
 
@@ -64,8 +64,21 @@ def log_excess(family: Family, selectivity: Selectivity, order: float, e: float)
 def one_excess(
     family: Family, selectivity: Selectivity, order: float, e: float, transition: Transition
 ) -> float:
-    """The same at one transition."""
-    return _excess(family, selectivity, order, e, transition, transition.until)
+    """The same at one transition.
+
+    A stop band that counts from a gain below the prototype's peak, with m the least F^2 in the pass bands,
+    has to reach g F^2 >= gs + (1 + gs) g m instead of gs.
+    """
+    excess = _excess(family, selectivity, order, e, transition, transition.until)
+    if transition.inner == 0.0:
+        return excess
+    inner, in_stop_band = transition.inner, excess + math.log(transition.discrimination)
+    if selectivity.kind == "band-stop":
+        inner *= 1.0 + e
+        in_stop_band = family.log_discrimination(order, e)
+    lull = family.log_lull(order, e, inner) if inner < 1.0 else 0.0
+    left = 1.0 - (1.0 + transition.stop_edge.excess) * math.exp(min(0.0, lull - in_stop_band))
+    return excess + math.log(left) if left > 0.0 else -math.inf
 
 
 def lower_bound(family: Family, selectivity: Selectivity, transition: Transition) -> float:
@@ -99,27 +112,17 @@ def level_order(family: Family, selectivity: Selectivity) -> float:
     Each e has the order that the transitions from there on take; it falls as e grows, and so does what
     that order reaches at the transitions inside.
     """
-    transitions = selectivity.transitions
-    for count in range(1, len(transitions)):
-        inside, outside = transitions[:count], transitions[count:]
 
-        def taken(e: float, outside: tuple[Transition, ...] = outside) -> float:
-            return max(family.real_order(e, one.discrimination) for one in outside)
+    def taken(outside: Sequence[Transition], e: float) -> float:
+        return max(family.real_order(e, one.discrimination) for one in outside)
 
-        def short(
-            e: float, inside: tuple[Transition, ...] = inside, taken: Callable[[float], float] = taken
-        ) -> float:
-            order = taken(e)
-            return -min(_excess(family, selectivity, order, e, one, math.inf) for one in inside)
+    def short(inside: Sequence[Transition], outside: Sequence[Transition], e: float) -> float:
+        order = taken(outside, e)
+        return -min(_excess(family, selectivity, order, e, one, math.inf) for one in inside)
 
-        low, high = inside[-1].e, outside[0].e
-        at_high = short(high)
-        if at_high >= 0.0:
-            at_low = short(low)
-            if at_low >= 0.0:
-                return family.real_order(low, inside[-1].discrimination)
-            return taken(_root(short, low, high, at_low, at_high))
-    return family.real_order(transitions[-1].e, transitions[-1].discrimination)
+    count, e = _divided(selectivity, short)
+    last = selectivity.transitions[count - 1]
+    return taken((last,) if e == last.e else selectivity.transitions[count:], e)
 
 
 def _level_edge(family: Family, selectivity: Selectivity, order: float) -> float:
@@ -128,25 +131,32 @@ def _level_edge(family: Family, selectivity: Selectivity, order: float) -> float
     Moving the edge outward raises the discrimination beyond it and lets F fall inside. So between two
     neighbouring transitions there is one place where the outer ones are ahead by as much as the inner ones.
     """
+
+    def least(transitions: Sequence[Transition], e: float) -> float:
+        return min(_excess(family, selectivity, order, e, one, math.inf) for one in transitions)
+
+    def ahead(inside: Sequence[Transition], outside: Sequence[Transition], e: float) -> float:
+        return least(outside, e) - least(inside, e)
+
+    return _divided(selectivity, ahead)[1]
+
+
+def _divided(
+    selectivity: Selectivity, rising: Callable[[Sequence[Transition], Sequence[Transition], float], float]
+) -> tuple[int, float]:
+    """Where a function of the transitions inside e, of those outside, and of e turns positive.
+
+    The number of transitions inside, and e: that of the last transition if it never does.
+    """
     transitions = selectivity.transitions
     for count in range(1, len(transitions)):
-        inside, outside = transitions[:count], transitions[count:]
-
-        def ahead(
-            e: float,
-            inside: tuple[Transition, ...] = inside,
-            outside: tuple[Transition, ...] = outside,
-        ) -> float:
-            return min(_excess(family, selectivity, order, e, one, math.inf) for one in outside) - min(
-                _excess(family, selectivity, order, e, one, math.inf) for one in inside
-            )
-
-        low, high = inside[-1].e, outside[0].e
-        at_high = ahead(high)
+        function = partial(rising, transitions[:count], transitions[count:])
+        low, high = transitions[count - 1].e, transitions[count].e
+        at_high = function(high)
         if at_high >= 0.0:
-            at_low = ahead(low)
-            return low if at_low >= 0.0 else _root(ahead, low, high, at_low, at_high)
-    return transitions[-1].e
+            at_low = function(low)
+            return count, low if at_low >= 0.0 else _root(function, low, high, at_low, at_high)
+    return len(transitions), transitions[-1].e
 
 
 def _centred_edges(family: Family, order: int, transition: Transition) -> Iterator[float]:

@@ -85,8 +85,9 @@ def selectivity(mask: Mask) -> Selectivity | None:
     """The selectivity of a mask of pass and stop bands; None for masks of another shape.
 
     A stop band counts from the highest gain in the pass bands; the height of a pass window is what the
-    band allows, and the design is scaled so that its peak is the top of the window: any lower peak asks
-    for a higher order. Nothing above that peak is admitted at any frequency.
+    band allows, and the design is scaled so that its peak is the top of the window: a lower peak would ask
+    for a higher order. A pass band is taken to run on to 0 or Nyquist where no stop band lies beyond it, so
+    that the gain exceeds the window nowhere.
     """
     runs = _runs(mask.bands)
     if runs is None:

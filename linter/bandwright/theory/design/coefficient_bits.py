@@ -81,6 +81,23 @@ def required_bits(
     return found
 
 
+def is_stable_when_rounded(
+    design: Design, mask: Mask, structure: str, number_format: Literal["floating", "fixed"], bits: int
+) -> bool:
+    """Whether the filter is stable with its coefficients rounded to nearest, in the word of `required_bits`.
+
+    Raises ValueError for a structure that is not in STRUCTURES.
+    """
+    if structure not in STRUCTURES:
+        raise ValueError(f"the stability of the structure {structure} can't be found by rounding")
+    w = _frequencies(design, mask)
+    peak = _highest_level(design, mask, w)
+    factors, _ = _factors(design, peak, structure in DIRECT_FORMS, number_format == "fixed")
+    return all(
+        _stays_stable(factor, w, _rounding_errors(factor, bits)) for factor in factors if factor.feedback
+    )
+
+
 @dataclass(frozen=True, slots=True)
 class _Factor:
     """A polynomial in 1/z whose coefficients are rounded: gain times the product of (1 - root/z)."""

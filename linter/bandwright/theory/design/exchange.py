@@ -462,7 +462,7 @@ def _top(left: Floats, right: Floats, below: Floats, here: Floats, above: Floats
 def _move(interpolant: _Interpolant, points: Floats, sizes: Floats, which: Indices, w: Floats) -> None:
     """Move these points to `w` where the error is larger there."""
     there = np.abs(interpolant.error(w))
-    larger = there > sizes[which]
+    larger = np.isfinite(there) & (there > sizes[which])
     points[which[larger]], sizes[which[larger]] = w[larger], there[larger]
 
 

@@ -68,7 +68,7 @@ def least_length(
     if estimate is None:
         return LeastLength(None, most_taps + 1, 0, None, (), ())
     search = _Search(mask, bounded_transitions, most_taps)
-    length: int | None = min(estimate.taps, most_taps)
+    length = search.open_near(estimate.taps)
     while length is not None:
         search.probe(length)
         length = search.following()
@@ -152,7 +152,7 @@ class _Search:
         if len(self._undecided) > MAX_UNDECIDED_LENGTHS:
             return None
         best = self._best.taps if self._best else self._most_taps + 1
-        refused = max(refused for refused in self._refused if refused < self._most_taps)
+        refused = max((refused for refused in self._refused if refused < self._most_taps), default=0)
         decades, probed = self._decades, list(self._decades)
         last = probed[-1]
         if self._best and 0 < refused < best:
@@ -168,7 +168,11 @@ class _Search:
                 flatter = abs(moved * decades[last] / changed) if changed else math.inf
                 step = max(step, min(flatter, 2.0 * abs(moved)))
             target = math.ceil(last + math.copysign(step, decades[last]))
-        low = self._low()
+        return self.open_near(target)
+
+    def open_near(self, target: int) -> int | None:
+        """The length nearest to this one of which nothing is known, below the best one and the limit."""
+        low, best = self._low(), self._best.taps if self._best else self._most_taps + 1
         target = min(max(target, low), best - 1)
         for distance in range(best - low):
             for taps in (target - distance, target + distance):
