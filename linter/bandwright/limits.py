@@ -42,6 +42,9 @@ MAX_SEARCHED_WORD_BITS = 160
 MAX_ANALYSES_KEPT = 16_384
 """Analyses kept by the value of their filter; more than the filters of the largest band file."""
 
+MAX_RECENT_ANALYSES = 512
+"""Analyses that the server keeps besides those of the open files, for edits that are undone."""
+
 MAX_ANSWERS_KEPT = 4_096
 """Answers kept for reuse; one that is in use is never dropped."""
 

@@ -18,7 +18,9 @@ from bandwright.forecast.questions import Answers, Question
 class Memo:
     """Analyses kept by the filter's value. One is good until a question that it left open has an answer."""
 
-    def __init__(self) -> None:
+    def __init__(self, most: int | None = None) -> None:
+        """`most`: how many are kept, where that is not `limits.MAX_ANALYSES_KEPT`."""
+        self._most = limits.MAX_ANALYSES_KEPT if most is None else most
         self._kept: OrderedDict[Filter, Analysis] = OrderedDict()
 
     def look_up(self, filter: Filter, answers: Answers) -> Analysis | None:
@@ -32,7 +34,7 @@ class Memo:
     def keep(self, analysis: Analysis) -> None:
         """Keep an analysis, dropping the one that was used longest ago where there are too many."""
         self._kept[analysis.filter] = analysis
-        if len(self._kept) > limits.MAX_ANALYSES_KEPT:
+        if len(self._kept) > self._most:
             self._kept.popitem(last=False)
 
 

@@ -454,7 +454,7 @@ class BlockReader:
 
     def trouble(self, trouble: Trouble, row: Key, path: Path, text: str) -> None:
         facts = [("key", _name(path)), ("written", text), *trouble.facts]
-        if trouble.id == "key/wrong-kind" and trouble.form != "too-small":
+        if trouble.id == "key/wrong-kind" and trouble.form not in ("too-small", "out-of-range"):
             facts += [("wanted", wanted(row)), ("example", row.example)]
         mends = [Mend(path, mended, reading=reading) for mended, reading in trouble.mends]
         self.fault(trouble.id, Place(path), facts, trouble.form, mends)

@@ -53,6 +53,7 @@ FAULTS: Final[dict[str, dict[str, tuple[str, ...]]]] = {
         "not-a-number": _WRITTEN,
         "not-a-whole-number": _WRITTEN,
         "too-small": ("key", "written", "least"),
+        "out-of-range": ("key", "written", "least", "most"),
         "bad-date": _WRITTEN,
         "bad-finding": _WRITTEN,
         "bad-word": _WRITTEN,

@@ -66,6 +66,19 @@ FITS: Final = {
 }
 """By what a key asks for, the units that it takes, the likeliest first."""
 
+_REACH: Final = {
+    "frequency": (1e-9, 1e15),
+    "level": (1e-9, 1e3),
+    "noise": (1e-9, 1e3),
+    "gain": (1e-50, 1e50),
+    "share": (1e-50, 1e50),
+    "time": (1e-15, 1e9),
+}
+"""By what a unit measures, how small and how large a number of it can be, in the base unit; zero is apart.
+
+No filter that can be built comes near, and all arithmetic on what lies between stays in range.
+"""
+
 _BARE: Final = ("gain", "peak")
 """Dimensions under which 0 and 1 may stand without a unit, because they can mean one thing only."""
 
@@ -118,8 +131,20 @@ def parse(text: str, dimension: str, symmetric: bool = False) -> Quantity | Trou
         return Trouble("key/number-without-unit", "", (("dimension", dimension),), mends)
     name = _ALIASES.get(unit, unit)
     if name in fits:
-        return Quantity(number, name, plus_minus)
+        return _out_of_range(number, name) or Quantity(number, name, plus_minus)
     return _wrong_unit(plain[: match.end(2)], unit, name, dimension)
+
+
+def _out_of_range(number: float, unit: str) -> Trouble | None:
+    """What is wrong with a number that no filter has to do with; None where it is a likely one."""
+    dimension, exponent = UNITS[unit].dimension, UNITS[unit].exponent
+    least, most = _REACH.get(dimension, (0.0, math.inf))
+    if number == 0.0 or least <= abs(_scaled(number, exponent)) <= most:
+        return None
+    facts = tuple(
+        (name, show(_scaled(end, -exponent), dimension, unit)) for name, end in (("least", least), ("most", most))
+    )
+    return Trouble("key/wrong-kind", "out-of-range", facts)
 
 
 def _readings(number: float, dimension: str) -> tuple[str, ...]:
@@ -284,7 +309,7 @@ def show_number(number: float, digits: int = 4) -> str:
     text = full if float(full) == number else short
     if "e" not in text:
         return text
-    return f"{float(text):.0f}" if 1 <= abs(number) < 1e7 else text.replace("e-0", "e-").replace("e+0", "e")
+    return f"{float(text):.0f}" if 1 <= abs(number) < 1e7 else text.replace("e-0", "e-").replace("e+0", "e").replace("e+", "e")
 
 
 def show(value: float, dimension: str, unit: str | None = None, digits: int = 4) -> str:

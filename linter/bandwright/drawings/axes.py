@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from itertools import pairwise
 from typing import NamedTuple
 
 NARROWEST = 1 / 20
@@ -29,7 +30,8 @@ class Scale(NamedTuple):
     def px(self, value: float) -> float:
         """The pixel of a value; of an infinite one an infinite pixel."""
         if self.log:
-            part = math.log(value / self.start) / math.log(self.end / self.start) if value > 0.0 else -math.inf
+            log = math.log(value / self.start) if value > 0.0 else -math.inf
+            part = log / math.log(self.end / self.start)
         else:
             part = (value - self.start) / (self.end - self.start)
         return self.first + part * (self.last - self.first)
@@ -49,10 +51,11 @@ class Scale(NamedTuple):
 def frequency_scale(edges: Sequence[float], nyquist: float, first: float, last: float) -> Scale:
     """The frequency axis on which the narrowest band or transition can be seen.
 
-    `edges`: the edges strictly between 0 and `nyquist`, rising, in any unit. The first of these that gives
-    each band and transition a twentieth of the width is taken, or else the one with the widest narrowest:
-    linear from 0 to Nyquist; logarithmic, from a third of the lowest edge to three times the highest, or to
-    Nyquist; linear around the edges, with as much on either side as they are apart.
+    `edges`: the edges strictly between 0 and `nyquist`, rising, in the unit of the axis. Of these ways the
+    first is taken that gives each band and transition a twentieth of the width, or else the one whose
+    narrowest of them is widest: linear from 0 to Nyquist; logarithmic, from a third of the lowest edge to
+    three times the highest, or to Nyquist; linear around the edges, with as much on either side as they are
+    apart.
     """
     whole = Scale(0.0, nyquist, first, last)
     if not edges:
@@ -73,7 +76,7 @@ def frequency_scale(edges: Sequence[float], nyquist: float, first: float, last: 
 def _narrowest(edges: Sequence[float], scale: Scale) -> float:
     """The share of the axis that its narrowest stretch between edges takes."""
     places = [scale.first, *(scale.px(edge) for edge in edges), scale.last]
-    widths = [after - before for before, after in zip(places, places[1:], strict=False) if after > before]
+    widths = [after - before for before, after in pairwise(places) if after > before]
     return min(widths) / (scale.last - scale.first)
 
 
@@ -103,7 +106,7 @@ def small_ticks(scale: Scale) -> list[float]:
 def label(value: float, decimals: int) -> str:
     """A number as it stands at an axis, with a minus sign and no needless digit."""
     text = f"{value:.{decimals}f}"
-    return text.replace("-", "\N{MINUS SIGN}") if float(text) else text.lstrip("-")
+    return text.replace("-", "\N{MINUS SIGN}") if float(text) else "0"
 
 
 def _log_ticks(scale: Scale, most: int) -> list[tuple[float, str]]:

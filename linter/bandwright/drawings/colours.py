@@ -44,12 +44,15 @@ NOT_CURVES = ("ground", "ink", "quiet", "frame", "grid", "hatch", "limit")
 
 FONT = 'system-ui,"Segoe UI",Roboto,"Helvetica Neue",Arial,sans-serif'
 
+HATCH = "bandwright-hatch"
+"""The id of the pattern of forbidden areas."""
+
 _WEIGHTS = (
     f"text{{font-family:{FONT}}}.strong{{font-weight:600}}"
-    ".frame,.limit,.curve,.hatch,.grid,.edge{fill:none}"
-    ".frame{stroke-width:1}.grid,.hatch{stroke-width:1}.edge{stroke-width:.8}.limit{stroke-width:1.4}"
+    ".frame,.curve,.hatch,.grid,.edge,.ring{fill:none}"
+    f".limit{{fill:url(#{HATCH});stroke-width:1.4}}.edge{{stroke-width:.8}}"
+    ".frame,.grid,.hatch,.leader{stroke-width:1}.ring{stroke-width:2}.mark{stroke-width:1.5}"
     ".curve{stroke-width:1.5;stroke-linejoin:round;stroke-linecap:round}.chosen{stroke-width:3}"
-    ".mark{stroke-width:1.5}.leader{stroke-width:1}.ring{fill:none;stroke-width:2}"
 )
 
 
@@ -61,7 +64,9 @@ def role(family: str) -> str:
 def style_sheet() -> str:
     """CSS: light, and dark where a screen asks for it. Every rule stays inside `.bandwright-plot`."""
     dark = _rules(DARK)
-    return f"{_scoped(_WEIGHTS + _rules(LIGHT))}@media screen and (prefers-color-scheme:dark){{{_scoped(dark)}}}"
+    return (
+        f"{_scoped(_WEIGHTS + _rules(LIGHT))}@media screen and (prefers-color-scheme:dark){{{_scoped(dark)}}}"
+    )
 
 
 def _rules(colours: Mapping[str, str]) -> str:

@@ -4,10 +4,12 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Iterator, Sequence
-from itertools import product
+from itertools import pairwise, product
 from typing import Literal, NamedTuple
 
 Side = Literal["left", "right"]
+Line = Sequence[tuple[float, float]]
+"""A polyline, in pixels."""
 
 ASCENT, DESCENT = 0.95, 0.25
 """How far a text goes above and below its baseline, in its size."""
@@ -58,7 +60,9 @@ def text_width(text: str, size: float, *, strong: bool = False) -> float:
     return sum(widths) * size * (_BOLD if strong else 1.0)
 
 
-def text_box(x: float, y: float, text: str, size: float, anchor: str = "start", *, strong: bool = False) -> Box:
+def text_box(
+    x: float, y: float, text: str, size: float, anchor: str = "start", *, strong: bool = False
+) -> Box:
     """The box of a text on the baseline `y`; `anchor` says what of it lies at `x`."""
     width = text_width(text, size, strong=strong)
     left = x - {"start": 0.0, "middle": 0.5, "end": 1.0}[anchor] * width
@@ -97,7 +101,9 @@ class Flag(NamedTuple):
 
 def flag_span(flag: Flag, side: Side, gap: float) -> tuple[float, float]:
     """From where to where it reaches on that side of its line."""
-    return (flag.x - gap - flag.width, flag.x - gap) if side == "left" else (flag.x + gap, flag.x + gap + flag.width)
+    if side == "left":
+        return flag.x - gap - flag.width, flag.x - gap
+    return flag.x + gap, flag.x + gap + flag.width
 
 
 def raise_flags(
@@ -105,12 +111,13 @@ def raise_flags(
 ) -> list[tuple[int, Side]] | None:
     """A row, counted from the panels upward, and a side for every flag; None where there is no way.
 
-    No flag covers another one or the line of one above it. Fewest rows win, then the best sides.
+    No flag covers another one or the line of one above it. A flag on its other side counts as much as two
+    rows.
     """
     own = tuple(flag.side for flag in flags)
     free: Sequence[tuple[Side, ...]] = [("left", "right") for _ in flags]
     ways = product(*free) if len(flags) <= MOST_SIDES_TRIED else iter([own])
-    best: tuple[int, int, list[tuple[int, Side]]] | None = None
+    best: tuple[int, list[tuple[int, Side]]] | None = None
     for sides in ways:
         spans = [flag_span(flag, side, gap) for flag, side in zip(flags, sides, strict=True)]
         if any(start < left or end > right for start, end in spans):
@@ -118,10 +125,10 @@ def raise_flags(
         rows = _rows([flag.x for flag in flags], spans, gap)
         if rows is None:
             continue
-        cost = (max(rows), sum(side != best_side for side, best_side in zip(sides, own, strict=True)))
-        if best is None or cost < best[:2]:
-            best = (*cost, list(zip(rows, sides, strict=True)))
-    return best[2] if best is not None else None
+        cost = max(rows) + 2 * sum(side != best_side for side, best_side in zip(sides, own, strict=True))
+        if best is None or cost < best[0]:
+            best = cost, list(zip(rows, sides, strict=True))
+    return best[1] if best is not None else None
 
 
 def _rows(lines: Sequence[float], spans: Sequence[tuple[float, float]], gap: float) -> list[int] | None:
@@ -134,7 +141,7 @@ def _rows(lines: Sequence[float], spans: Sequence[tuple[float, float]], gap: flo
             if one == other:
                 continue
             start, end = spans[one]
-            spanned = start - gap < lines[other] < end + gap
+            spanned = start - 0.5 * gap < lines[other] < end + 0.5 * gap
             clash = start - gap < spans[other][1] and spans[other][0] < end + gap
             if (spanned and rows[one] <= rows[other]) or (one > other and clash and rows[one] == rows[other]):
                 rows[one] = rows[other] + 1
@@ -157,7 +164,7 @@ Cells = set[tuple[int, int]]
 
 
 def label_lines(
-    curves: Sequence[Sequence[Sequence[tuple[float, float]]]],
+    curves: Sequence[Sequence[Line]],
     sizes: Sequence[tuple[float, float]],
     panel: Box,
     taken: Sequence[Box],
@@ -197,7 +204,7 @@ def label_lines(
     return found
 
 
-def _anchors(curve: Sequence[Sequence[tuple[float, float]]], panel: Box) -> Iterator[tuple[float, float]]:
+def _anchors(curve: Sequence[Line], panel: Box) -> Iterator[tuple[float, float]]:
     """Points of a curve, about two cells apart, not at the panel's edge."""
     for run in curve:
         for x, y in along(run, 2.0 * CELL):
@@ -205,10 +212,12 @@ def _anchors(curve: Sequence[Sequence[tuple[float, float]]], panel: Box) -> Iter
                 yield x, y
 
 
-def along(run: Sequence[tuple[float, float]], every: float, start: float = 0.0) -> Iterator[tuple[float, float]]:
+def along(
+    run: Sequence[tuple[float, float]], every: float, start: float = 0.0
+) -> Iterator[tuple[float, float]]:
     """Points on a polyline at equal distances along it, the first after `start` pixels."""
     ahead = start
-    for (x1, y1), (x2, y2) in zip(run, run[1:], strict=False):
+    for (x1, y1), (x2, y2) in pairwise(run):
         length = math.hypot(x2 - x1, y2 - y1)
         while ahead <= length and length > 0.0:
             yield x1 + (x2 - x1) * ahead / length, y1 + (y2 - y1) * ahead / length
@@ -240,7 +249,7 @@ def _holds(panel: Box, box: Box) -> bool:
     )
 
 
-def _cells(runs: Iterable[Sequence[tuple[float, float]]]) -> Cells:
+def _cells(runs: Iterable[Line]) -> Cells:
     return {(int(x // CELL), int(y // CELL)) for run in runs for x, y in (*along(run, 0.5 * CELL), run[-1])}
 
 

@@ -1,4 +1,8 @@
-"""The plot of one filter: its mask, the responses of its candidates, and the edges that set their orders."""
+"""The plot of one filter: its mask, the responses of its candidates, and the edges that set their orders.
+
+Two panels share the axis of frequencies: the upper one enlarges the window of the pass bands, the lower one
+shows the whole range of gains. A window of 0.1 dB and a stop band at -70 dB can so be read in one plot.
+"""
 
 from __future__ import annotations
 
@@ -6,102 +10,235 @@ import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
-from bandwright.drawings import areas, axes, colours, curves, labels, marks
+from bandwright.drawings import areas, axes, colours, curves, labels, panels, words
 from bandwright.drawings.axes import Scale
-from bandwright.drawings.labels import Box, Flag
+from bandwright.drawings.edges import ROW, Edge, Raised, flags, named_edges, raised
+from bandwright.drawings.labels import Box, LineLabel
+from bandwright.drawings.marks import mark
+from bandwright.drawings.panels import Lines, Panel
 from bandwright.drawings.responses import Response, responses
-from bandwright.drawings.svg import element, escaped, line, number, rectangle
+from bandwright.drawings.svg import element, escaped, line, rectangle
 from bandwright.forecast.forecast import Forecast
 from bandwright.theory.closed_form.types import Mask
 
-WIDTH = 860.0
-LEFT, RIGHT = 78.0, 784.0
+WIDTH, MARGIN = 860.0, 12.0
+LEFT, RIGHT = 78.0, 774.0
 """Where the panels begin and end."""
-ENLARGED_HEIGHT, WHOLE_HEIGHT, GAP = 150.0, 300.0, 16.0
-TITLE_SIZE, TEXT_SIZE = 16.0, 12.0
-ROW = 18.0
-FLAG_GAP = 5.0
-MARK_EVERY = 110.0
-"""Pixels along a curve between its markers."""
-
-MOST_CHARACTERS = 40_000
-STEPS = (1.0, 2.0, 4.0, 8.0)
-"""Coarser and coarser samples, until the plot is no longer than `MOST_CHARACTERS`."""
+FLAGS_TOP = 38.0
+ENLARGED_HEIGHT, WHOLE_HEIGHT, PANEL_GAP = 150.0, 300.0, 16.0
+TITLE_SIZE, SIZE, LINE = 16.0, 12.0, 17.0
+RING = 6.0
 
 MOST_TICKS = 9
+MOST_CHARACTERS = 40_000
+STEPS = (1.0, 2.0, 4.0, 8.0)
+"""Coarser and coarser samples, in pixels, until the plot has no more than `MOST_CHARACTERS`."""
+
+HATCH = element(
+    "pattern",
+    element("path", class_="hatch", d="M-2 2L2 -2M0 8L8 0M6 10L10 6"),
+    id=colours.HATCH,
+    patternUnits="userSpaceOnUse",
+    width=8.0,
+    height=8.0,
+)
 
 
 @dataclass(frozen=True, slots=True)
-class Edge:
-    """An edge of a band that lies between 0 and Nyquist."""
+class Layout:
+    """What is drawn, and where."""
 
-    w: float
-    """rad/sample"""
-    name: str
-    """ "stop from 25 Hz" """
-    side: labels.Side
-    """On which side of the edge its band lies."""
-    level: float | None
-    """dB: the most that a stop band admits."""
-    sets: tuple[str, ...]
-    """The families drawn whose order it sets."""
-
-
-@dataclass(frozen=True, slots=True)
-class Panel:
-    """One of the two panels: the same frequencies, another stretch of gain."""
-
-    frequency: Scale
-    """rad/sample"""
-    level: Scale
-    """dB"""
+    mask: Mask
+    shown: tuple[Response, ...]
+    edges: tuple[Edge, ...]
+    flags: list[Raised]
+    enlarged: Panel
+    whole: Panel
 
     @property
-    def box(self) -> Box:
-        return Box(self.frequency.first, self.level.last, self.frequency.last, self.level.first)
+    def lowest_flag(self) -> float:
+        """The baseline of the lowest row of flags."""
+        return self.enlarged.box.top - 10.0
 
 
 def plot(forecast: Forecast, designed: Sequence[Response] = ()) -> str:
-    """The SVG document; the same for the same values.
+    """The plot as an SVG document; the same for the same values.
 
-    `designed` are responses that the forecast has no design of, such as those of FIR filters.
+    `designed` are responses of candidates that the forecast has no design of: those of FIR filters.
 
     Raises:
         ValueError: the filter makes no mask.
     """
-    mask = forecast.mask
-    if mask is None:
+    if forecast.mask is None:
         raise ValueError(f"{forecast.filter.name} makes no mask")
-    shown = (*responses(forecast), *designed)
-    edges = _edges(forecast, mask, shown)
-    drawn = (_Drawing(forecast, mask, shown, edges, step).document() for step in STEPS)
-    return next((text for text in drawn if len(text) <= MOST_CHARACTERS), "") or (
-        _Drawing(forecast, mask, (), edges, STEPS[-1]).document()
+    placed = layout(forecast, forecast.mask, (*responses(forecast), *designed))
+    for step in STEPS:
+        text = _document(forecast, placed, step)
+        if len(text) <= MOST_CHARACTERS:
+            break
+    return text
+
+
+def layout(forecast: Forecast, mask: Mask, shown: tuple[Response, ...]) -> Layout:
+    """The places of flags and panels."""
+    edges = named_edges(forecast, mask, shown)
+    per_radian = _unit(forecast.sample_rate_hz)[1]
+    shown_edges = sorted({edge.w * per_radian for edge in edges})
+    own = axes.frequency_scale(shown_edges, math.pi * per_radian, LEFT, RIGHT)
+    frequency = _times(own, 1.0 / per_radian)
+    found = raised(edges, frequency, MARGIN, WIDTH - MARGIN)
+    top = FLAGS_TOP + ROW * (1 + max((one.row for one in found), default=-1)) + 6.0
+    bottom = top + ENLARGED_HEIGHT
+    enlarged = Panel(frequency, Scale(*areas.enlarged(mask), bottom, top))
+    top = bottom + PANEL_GAP
+    whole = Panel(frequency, Scale(*areas.whole(mask), top + WHOLE_HEIGHT, top))
+    return Layout(mask, shown, edges, found, enlarged, whole)
+
+
+def _document(forecast: Forecast, placed: Layout, step: float) -> str:
+    caption = words.caption(forecast, placed.mask, placed.shown, placed.whole.frequency)
+    rows = labels.wrapped(caption, SIZE, WIDTH - LEFT - MARGIN)
+    axes_bottom = placed.whole.box.bottom + 96.0
+    height = axes_bottom + LINE * len(rows) + MARGIN
+    title = words.title(forecast)
+    parts = [
+        element("title", escaped(title)),
+        element("desc", escaped(words.description(forecast, placed.mask, placed.shown, placed.edges))),
+        element("style", colours.style_sheet()),
+        element("defs", HATCH),
+        rectangle("ground", 0.0, 0.0, WIDTH, height),
+        _text(
+            labels.shortened(title, TITLE_SIZE, WIDTH - 2 * MARGIN, strong=True),
+            MARGIN,
+            26.0,
+            "ink strong",
+            size=TITLE_SIZE,
+        ),
+        *_panels(placed, step),
+        *_frequency_axes(forecast.sample_rate_hz, placed.whole),
+        *(_text(row, LEFT, axes_bottom + LINE * at, "quiet") for at, row in enumerate(rows)),
+    ]
+    return (
+        element(
+            "svg",
+            "\n".join(("", *parts, "")),
+            xmlns="http://www.w3.org/2000/svg",
+            class_="bandwright-plot",
+            role="img",
+            viewBox=f"0 0 {WIDTH:.0f} {height:.0f}",
+            width=WIDTH,
+            height=round(height),
+        )
+        + "\n"
     )
 
 
-class _Drawing:
-    """One attempt at a plot, with samples of one fineness."""
+def _panels(placed: Layout, step: float) -> Iterator[str]:
+    forbidden = areas.areas(placed.mask)
+    knots = tuple(edge.w for edge in placed.edges)
+    both = (placed.enlarged, placed.whole)
+    drawn = {
+        panel: [
+            curves.polylines(one.gain_db, (*knots, *one.knots), panel.frequency, panel.level, step)
+            for one in placed.shown
+        ]
+        for panel in both
+    }
+    for panel in both:
+        yield from panels.ground(panel, forbidden)
+    yield from flags(placed.flags, placed.lowest_flag, placed.whole.box.bottom)
+    # The chosen one comes last, over the others.
+    order = sorted(range(len(placed.shown)), key=lambda at: placed.shown[at].chosen)
+    for panel in both:
+        for at in order:
+            yield from panels.curve_lines(placed.shown[at], drawn[panel][at])
+    places = _curve_places(placed, drawn[placed.whole])
+    reserved = [place.anchor for place in places if place is not None] + _binding_corners(placed)
+    for panel in both:
+        for at in order:
+            phase = (at + 0.5) / len(order)
+            yield from panels.curve_marks(placed.shown[at], panel, drawn[panel][at], phase, reserved)
+    yield from _rings(placed)
+    yield from _curve_labels(placed, places)
+    bounds = [level for band in placed.mask.bands if band.kind != "stop" for level in (band.least, band.most)]
+    yield from panels.notes(placed.enlarged, [level for level in bounds if level is not None])
+    yield from panels.notes(placed.whole, [area.level for area in forbidden if area.over])
+    yield from panels.gain_axis(placed.enlarged, "Pass band, dB")
+    yield from panels.gain_axis(placed.whole, "Gain, dB")
 
-    def __init__(
-        self, forecast: Forecast, mask: Mask, shown: Sequence[Response], edges: Sequence[Edge], step: float
-    ) -> None:
-        self.forecast, self.mask, self.shown, self.edges = forecast, mask, shown, edges
-        self.areas = areas.areas(mask)
-        frequency = axes.frequency_scale(sorted({edge.w for edge in edges}), math.pi, LEFT, RIGHT)
-        self.flags, self.flag_rows = _flags(edges, frequency)
-        top = 44.0 + self.flag_rows * ROW + 6.0
-        low, high = areas.enlarged(mask)
-        self.enlarged = Panel(frequency, Scale(low, high, top + ENLARGED_HEIGHT, top))
-        top += ENLARGED_HEIGHT + GAP
-        low, high = areas.whole(mask)
-        self.whole = Panel(frequency, Scale(low, high, top + WHOLE_HEIGHT, top))
-        self.flag_top = 44.0
-        knots = [edge.w for edge in edges]
-        self.lines = {
-            panel: [
-                curves.polylines(one.gain_db, (*knots, *one.knots), frequency, panel.level, step)
-                for one in shown
-            ]
-            for panel in (self.enlarged, self.whole)
-        }
+
+def _binding_corners(placed: Layout) -> list[tuple[float, float]]:
+    """The corners of the mask at the edges that set an order, in pixels."""
+    panel = placed.whole
+    return [
+        (panel.frequency.px(edge.w), panel.level.px(edge.most_db))
+        for edge in placed.edges
+        if edge.sets and edge.most_db is not None
+    ]
+
+
+def _rings(placed: Layout) -> Iterator[str]:
+    for x, y in _binding_corners(placed):
+        yield element("circle", class_="ring", cx=x, cy=y, r=RING)
+
+
+def _curve_places(placed: Layout, lines: Sequence[Lines]) -> list[LineLabel | None]:
+    sizes = [(labels.text_width(one.label, SIZE, strong=one.chosen) + 6.0, 18.0) for one in placed.shown]
+    rings = [Box(x, y, x, y).grown(RING + 2.0) for x, y in _binding_corners(placed)]
+    walls = sorted({placed.whole.frequency.px(edge.w) for edge in placed.edges})
+    return labels.label_lines([panels.pairs(one) for one in lines], sizes, placed.whole.box, rings, walls)
+
+
+def _curve_labels(placed: Layout, places: Sequence[LineLabel | None]) -> Iterator[str]:
+    """Each response's label, with a line to a marker on it."""
+    for one, place in zip(placed.shown, places, strict=True):
+        if place is None:
+            continue
+        box, (x, y) = place
+        end = min(max(x, box.left), box.right), min(max(y, box.top), box.bottom)
+        yield line("leader", x, y, *end)
+        yield rectangle("plate", *box)
+        yield mark(one.family, x, y)
+        kind = "ink strong" if one.chosen else "ink"
+        if x >= box.right:
+            yield _text(one.label, box.right - 3.0, box.bottom - 5.0, kind, "end")
+        else:
+            yield _text(one.label, box.left + 3.0, box.bottom - 5.0, kind)
+
+
+def _frequency_axes(rate_hz: float | None, panel: Panel) -> Iterator[str]:
+    """Two axes below the panel: Hz, or parts of pi where no sample rate is known; and parts of it."""
+    unit, per_radian = _unit(rate_hz)
+    if rate_hz is not None:
+        end = panel.frequency.end * per_radian
+        unit, factor = next(one for one in _UNITS if end >= 10.0 * one[1] or one[1] == 1.0)
+        per_radian /= factor
+    upper = (per_radian, f"Frequency, {unit}")
+    lower = (1.0 / math.tau, "Fraction of the sample rate")
+    for top, (factor, title) in ((panel.box.bottom, upper), (panel.box.bottom + 42.0, lower)):
+        own = _times(panel.frequency, factor)
+        yield line("frame", own.first, top, own.last, top)
+        for value in axes.small_ticks(own):
+            yield line("frame", own.px(value), top, own.px(value), top + 3.0)
+        for value, text in axes.ticks(own, MOST_TICKS):
+            yield line("frame", own.px(value), top, own.px(value), top + panels.TICK)
+            yield _text(text, own.px(value), top + 17.0, "quiet", "middle")
+        yield _text(title, 0.5 * (own.first + own.last), top + 33.0, "ink", "middle")
+
+
+_UNITS = (("GHz", 1e9), ("MHz", 1e6), ("kHz", 1e3), ("Hz", 1.0))
+"""A unit is taken where the axis would else have numbers of five digits."""
+
+
+def _unit(rate_hz: float | None) -> tuple[str, float]:
+    """The unit of frequencies, and how many of it are 1 rad/sample."""
+    return ("pi rad/sample", 1.0 / math.pi) if rate_hz is None else ("Hz", rate_hz / math.tau)
+
+
+def _times(scale: Scale, factor: float) -> Scale:
+    """The same scale in another unit."""
+    return scale._replace(start=scale.start * factor, end=scale.end * factor)
+
+
+def _text(text: str, x: float, y: float, kind: str, anchor: str = "start", *, size: float = SIZE) -> str:
+    return element("text", escaped(text), class_=kind, x=x, y=y, font_size=size, text_anchor=anchor)

@@ -5,12 +5,13 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.types import Binding
 from bandwright.theory.closed_form import response
-from bandwright.theory.closed_form.types import Design, Root
+from bandwright.theory.closed_form.types import Design
 
 NOTHING_DB = -1e4
 """Stands for the gain at a zero."""
@@ -38,7 +39,7 @@ def responses(forecast: Forecast) -> tuple[Response, ...]:
     able = sorted((one for one in forecast.candidates if forecast.design(one)), key=forecast.cost)
     shown = [one for one in able if one.allowed]
     named = forecast.filter.names("family")
-    if named is not None and len(named) == 1 and shown:
+    if named is not None and len(named) == 1:
         shown += [one for one in able if not one.allowed][:1]
     return tuple(
         _of_design(one, design, chosen=one is forecast.chosen)
@@ -52,7 +53,7 @@ def of_coefficients(
 ) -> Response:
     """The response of a symmetric FIR filter; `peak_db` is taken off its gain."""
     taps = len(coefficients)
-    half = [(2.0 * one, taps // 2 - at - 0.5 * (1 - taps % 2)) for at, one in enumerate(coefficients[: taps // 2])]
+    half = [(2.0 * one, 0.5 * (taps - 1) - at) for at, one in enumerate(coefficients[: taps // 2])]
     middle = coefficients[taps // 2] if taps % 2 else 0.0
 
     def gain_db(w: float) -> float:
@@ -67,18 +68,16 @@ def _of_design(one: Candidate, design: Design, *, chosen: bool) -> Response:
     def gain_db(w: float) -> float:
         return max(response.gain_db(design, w), NOTHING_DB)
 
-    return Response(one.family, f"{one.family} order {one.order}", gain_db, _knots(design), chosen, one.binding)
+    return Response(
+        one.family, f"{one.family} order {one.order}", gain_db, _knots(design), chosen, one.binding
+    )
 
 
 def _knots(design: Design) -> tuple[float, ...]:
     """The angles of poles and zeros, and the middle between neighbours of a kind: crests and troughs."""
     found: list[float] = []
     for roots in (design.poles, design.zeros):
-        angles = sorted(_angles(roots))
+        angles = sorted({root.angle for root in roots})
         found += angles
-        found += [0.5 * (one + other) for one, other in zip(angles, angles[1:], strict=False)]
+        found += [0.5 * (one + other) for one, other in pairwise(angles)]
     return tuple(sorted(found))
-
-
-def _angles(roots: tuple[Root, ...]) -> set[float]:
-    return {root.angle for root in roots}

@@ -80,9 +80,14 @@ class Worker:
 class Workers:
     """Answers what is wanted, one question at a time."""
 
-    def __init__(self, answered: Callable[[Question, Answer], None]) -> None:
-        """`answered` is called in the event loop with each answer."""
+    def __init__(
+        self,
+        answered: Callable[[Question, Answer], None],
+        given_up: Callable[[Question], None] = lambda question: None,
+    ) -> None:
+        """`answered` is called in the event loop with each answer, `given_up` with a deadly question."""
         self._answered = answered
+        self._given_up = given_up
         self._wanted: Sequence[Question] = ()
         self._question: Question | None = None
         self._job: asyncio.Task[None] | None = None
@@ -128,6 +133,8 @@ class Workers:
             self._deaths[question] = self._deaths.get(question, 0) + 1
             self._job = None
             self._replace()
+            if self._deaths[question] >= limits.MAX_WORKER_DEATHS:
+                self._given_up(question)
         else:
             self._question = self._job = None
             self._wanted = [one for one in self._wanted if one != question]

@@ -134,8 +134,9 @@ def too_few_bits(case: Case) -> Iterator[Hit]:
     {
         "": "One direct form of order {order} needs {needed} bits and double precision has {has}:"
         " denominator up to {largest}, numerator down to {smallest}; sections need {sections}.",
-        "unstable": "One direct form of order {order} needs {needed} bits and is unstable in double precision,"
-        " {has}: denominator up to {largest}, numerator down to {smallest}; sections need {sections}.",
+        "unstable": "One direct form of order {order} needs {needed} bits and is unstable with the {has} of"
+        " double precision: denominator up to {largest}, numerator down to {smallest}; sections need"
+        " {sections}.",
         "none": "One direct form of order {order} needs {needed} or more bits and double precision has {has}:"
         " denominator up to {largest}, numerator down to {smallest}; store sections.",
     },

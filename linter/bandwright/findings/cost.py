@@ -13,6 +13,9 @@ from bandwright.findings.words import a_filter, opening, title
 from bandwright.forecast import gaps
 from bandwright.remedies import families, relaxations
 
+FAR_DEARER = 2.5
+"""A family is far dearer that takes this many times the multiplications of another one."""
+
 
 @finding(
     "cost/linear-phase-with-iir-family",
@@ -94,6 +97,40 @@ def multiplications_over_maximum(case: Case) -> Iterator[Hit]:
 def memory_over_maximum(case: Case) -> Iterator[Hit]:
     """Every allowed family takes more memory than the maximum."""
     yield from _over(case, "memory")
+
+
+@finding(
+    "cost/far-dearer",
+    "information",
+    "{family} takes {multiplications} multiplications per sample, order {order}; {other} meets the same"
+    " mask with {fewer}, order {less}.",
+    remedies=(families.fewest_multiplications_family, families.least_order_family),
+    needs=CHOICE,
+)
+def far_dearer(case: Case) -> Iterator[Hit]:
+    """The one IIR family that the filter names takes several times what another one takes."""
+    filter, forecast, chosen = case.filter, case.forecast, case.chosen()
+    names = filter.names("family") or ()
+    if chosen is None or chosen.order is None or len(names) != 1 or not maxima.keeps_all(case):
+        return
+    mine = forecast.multiplications(chosen)
+    costs = [
+        (figure.value, one.family, one)
+        for one in forecast.candidates
+        if one.kind == "iir" and one.order and (figure := forecast.multiplications(one)) is not None
+    ]
+    if mine is None or not costs or mine.value < FAR_DEARER * min(costs)[0]:
+        return
+    fewer, _, other = min(costs)
+    facts = (
+        ("family", opening(chosen.family)),
+        ("multiplications", f"{mine.value:g}"),
+        ("order", chosen.order),
+        ("other", a_filter(other.family)),
+        ("fewer", f"{fewer:g}"),
+        ("less", other.order),
+    )
+    yield Hit("cost/far-dearer", Place(("family",)), facts)
 
 
 def _over(case: Case, name: str) -> Iterator[Hit]:

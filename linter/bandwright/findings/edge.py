@@ -12,8 +12,10 @@ from bandwright.findings import maxima
 from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.level import reaches_pass_band
 from bandwright.findings.rules import Hit, finding
-from bandwright.forecast import gaps
+from bandwright.forecast import bands, gaps
 from bandwright.forecast.bands import Band
+from bandwright.forecast.forecast import Forecast
+from bandwright.forecast.vary import varied
 from bandwright.remedies import edges, relaxations
 
 NYQUIST = math.pi * (1.0 + 1e-12)
@@ -21,6 +23,12 @@ NYQUIST = math.pi * (1.0 + 1e-12)
 
 NARROW_ORDER = relaxations.NARROW_ORDER
 """A transition is narrow where even an elliptic filter needs a higher order (for a band: twice that)."""
+
+UNEVEN = 1.5
+"""Transitions differ where one is that many times as wide as the narrowest."""
+
+WORTH_SAVING = 0.1
+"""The share of the taps that is worth a word."""
 
 NARROW_TAPS = 1000
 """Where only linear phase is allowed, a transition is narrow that takes more taps."""
@@ -296,6 +304,28 @@ def bands_overlap(case: Case) -> Iterator[Hit]:
 
 
 @finding(
+    "edge/too-close",
+    "error",
+    "The edge {edge} is less than a thousand-millionth of Nyquist from {other}, too close to compute with;"
+    " part them, or decimate first.",
+    needs=("bands", "sample_rate"),
+)
+def too_close(case: Case) -> Iterator[Hit]:
+    """Two edges, or one and 0 Hz or Nyquist, that double precision can't part well enough."""
+    found = [(path, w) for path, w in _edges(case) if w is not None]
+    close = bands.too_close(case.bands)
+    if close is None or not all(0.0 <= w <= NYQUIST for _, w in found):
+        return
+    paths = {w: path for path, w in found}
+    written = {0.0: "0 Hz", math.pi: "Nyquist"}
+    written |= {w: setting.written for path, w in found if (setting := case.filter.get(*path)) is not None}
+    edge, other = close if close[1] not in paths else close[::-1]
+    related = ((Place(paths[other]), "the edge next to it"),) if other in paths else ()
+    facts = (("edge", written[edge]), ("other", written[other]))
+    yield Hit("edge/too-close", Place(paths[edge]), facts, "", related)
+
+
+@finding(
     "edge/no-pass-band",
     "error",
     "No band passes anything, so a filter of gain 0 would do; add a `pass` band.",
@@ -336,6 +366,39 @@ def shape_not_judged_yet(case: Case) -> Iterator[Hit]:
         return
     if {"pass", "stop"} <= kinds and not reaches_pass_band(case):
         yield Hit("edge/shape-not-judged-yet", Place(("bands",), "key"))
+
+
+@finding(
+    "edge/uneven-transitions",
+    "information",
+    "The transition from {low} to {high} alone sets the length, as the next one is {times} times as wide; as"
+    " much for both saves {saved} of {taps} taps.",
+    remedies=(relaxations.even_transitions,),
+    needs=CHOICE,
+)
+def uneven_transitions(case: Case) -> Iterator[Hit]:
+    """An FIR filter whose narrowest transition is much narrower than the others."""
+    chosen, filter = case.chosen(), case.filter
+    if chosen is None or chosen.taps is None or not maxima.keeps_all(case):
+        return
+    wider = relaxations.evened(filter, case.gaps)
+    if wider is None:
+        return
+    gap, edge = wider
+    times = sorted(one.width for one in case.gaps)[1] / gap.width
+    after = Forecast(varied(filter, gap.stop, edge), case.forecast.answers).candidate(chosen.family)
+    if times < UNEVEN or after is None or after.taps is None:
+        return
+    taps, fewer = case.exact(chosen.taps), case.exact(after.taps)
+    if taps is None or fewer is None or taps - fewer < WORTH_SAVING * taps:
+        return
+    facts = (
+        *gap.facts,
+        ("times", quantities.show_number(times, 2)),
+        ("saved", f"{taps - fewer:g}"),
+        ("taps", f"{taps:g}"),
+    )
+    yield Hit("edge/uneven-transitions", Place(gap.stop), facts, "", gap.places)
 
 
 @finding(

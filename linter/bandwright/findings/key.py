@@ -97,6 +97,11 @@ wrong_kind = reported(
         "not-a-whole-number": "`{written}` is not a whole number, which `{key}` takes; write for instance"
         " `{example}`.",
         "too-small": "`{key}: {written}` is too small; the least that it takes is {least}.",
+        "out-of-range": (
+            "`{key}: {written}` is beyond all that filters have to do with; sizes from {least} to {most} are"
+            " read.",
+            "`{written}` is beyond all that filters have to do with; sizes from {least} to {most} are read.",
+        ),
         "bad-date": "`{written}` is not a day of the calendar, which `{key}` takes; write for instance"
         " `{example}`.",
         "bad-finding": "`{written}` is not the name of a finding, which has an area and a slash; write for"

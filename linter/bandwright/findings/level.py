@@ -9,11 +9,15 @@ from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Filter, Path, Place, Quantity, Setting
 from bandwright.findings.case import Case
 from bandwright.findings.rules import Find, Hit, finding
-from bandwright.forecast.bands import Band
+from bandwright.forecast.bands import LEAST_HEIGHT_DB, Band
 from bandwright.remedies import levels
 
 LEAST_ATTENUATION_DB = 0.5
 """A stop band that takes away less than this is none: half a dB is a gain of 0.94."""
+
+QUIETER_PER_BIT_DB = 20.0 * math.log10(2.0)
+SINE_DB = 10.0 * math.log10(1.5)
+"""A full-scale sine is 6.02 W + 1.76 dB above the noise of rounding to W bits (Bennett 1948, from memory)."""
 
 MOST_STOP_FACTOR = 10.0
 """A stop band whose gain may be this factor or more is taken for one in dB."""
@@ -156,7 +160,7 @@ def _window(filter: Filter, path: Path, kind: str, least: Quantity, most: Quanti
     bottom, top = quantities.decibels(least), quantities.decibels(most)
     if bottom > top:
         yield Hit("level/window-inverted", place, words, "", other)
-    elif bottom == top:
+    elif top - bottom < LEAST_HEIGHT_DB:
         yield Hit("level/no-room", place, (("written", low.written),), "window", other)
     elif kind == "pass" and least.unit == most.unit == "dB" and 0.5 <= bottom < top == 1.0:
         # Only a window that ends at exactly 1 is taken for factors: 0.99 to 1 is the usual way to write one.
@@ -217,8 +221,8 @@ def stop_above_pass(case: Case) -> Iterator[Hit]:
     for band in _reaching(case):
         stop, passed = band.most or 0.0, lowest.least or 0.0
         facts = (
-            ("stop", quantities.show(stop, "gain")),
-            ("passed", quantities.show(passed, "gain")),
+            ("stop", _in_words(stop)),
+            ("passed", _in_words(passed)),
             ("attenuation", quantities.show(-stop, "level")),
             ("ripple", quantities.show(-passed, "level")),
         )
@@ -226,6 +230,42 @@ def stop_above_pass(case: Case) -> Iterator[Hit]:
         related = ((Place(_level_path(filter, lowest.index, "pass")), "the pass band's level"),)
         place = Place(_level_path(filter, band.index, "stop"))
         yield Hit("level/stop-above-pass", place, facts, form, related)
+
+
+@finding(
+    "level/deeper-than-arithmetic",
+    "warning",
+    "A stop band {attenuation} down lies below the rounding noise of `{data}` data, {floor} below a"
+    " full-scale sine; ask for less, or store data in a longer word.",
+    needs=("arithmetic",),
+)
+def deeper_than_arithmetic(case: Case) -> Iterator[Hit]:
+    """A stop band that no signal in the filter's fixed-point format can show."""
+    arithmetic = case.forecast.arithmetic
+    if arithmetic is None or arithmetic.data.number_format != "fixed":
+        return
+    floor = QUIETER_PER_BIT_DB * arithmetic.data.bits + SINE_DB
+    depths = [
+        (-band.most, band.index)
+        for band in case.bands
+        if band.kind == "stop" and band.most is not None and band.most > -math.inf
+    ]
+    deepest, index = max(depths, default=(0.0, 0))
+    if deepest > floor:
+        facts = (
+            ("attenuation", quantities.show(deepest, "level")),
+            ("data", arithmetic.data.name),
+            ("floor", quantities.show(floor, "level", digits=2)),
+        )
+        place = Place(_level_path(case.filter, index, "stop"))
+        yield Hit(
+            "level/deeper-than-arithmetic", place, facts, "", ((Place(("arithmetic",)), "the arithmetic"),)
+        )
+
+
+def _in_words(decibels: float) -> str:
+    """A gain as a sentence quotes it."""
+    return quantities.show(decibels, "gain") if decibels > -math.inf else "0"
 
 
 def reaches_pass_band(case: Case) -> bool:

@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from bandwright import limits
 from bandwright.bandfile import quantities
+from bandwright.bandfile.grammar import IIR_FAMILIES
 from bandwright.bandfile.values import Place
 from bandwright.findings import maxima
 from bandwright.findings.case import CHOICE, Case
@@ -193,6 +194,25 @@ def pinned_too_low(case: Case) -> Iterator[Hit]:
     if gap is not None:
         facts = (("order", order), ("family", title(one.family)), ("least", one.least_order), *gap.facts)
         yield Hit("order/pinned-too-low", Place(("order",)), facts, "", gap.places)
+
+
+@finding(
+    "order/pinned-without-iir",
+    "warning",
+    "`order` pins IIR filters only, and {cause} leaves only FIR filters, so it asks for nothing; remove it.",
+    remedies=(relaxations.drop_order,),
+    needs=("order", "family", "phase"),
+)
+def pinned_without_iir(case: Case) -> Iterator[Hit]:
+    """An order is pinned, and no IIR family is allowed."""
+    filter, names = case.filter, case.filter.names("family")
+    linear = filter.text("phase") == "linear"
+    only_fir = names is not None and not any(name in IIR_FAMILIES for name in names)
+    if filter.count("order") is None or not (linear or only_fir):
+        return
+    cause, key = ("`phase: linear`", "phase") if linear else (f"`{', '.join(names or ())}`", "family")
+    related = ((Place((key,)), "leaves only FIR filters"),)
+    yield Hit("order/pinned-without-iir", Place(("order",)), (("cause", cause),), "", related)
 
 
 @finding(

@@ -2,12 +2,20 @@
 
 from __future__ import annotations
 
+import itertools
 import math
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Filter, Path, Quantity
 from bandwright.theory.closed_form.types import BandKind, Mask, MaskBand
+
+LEAST_WIDTH = 1e-9 * math.pi
+"""rad/sample. Edges nearer to one another, to 0 Hz or to Nyquist are too close for double precision."""
+
+LEAST_HEIGHT_DB = 1e-9
+"""A window of gains that is lower leaves a filter no room."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,7 +56,8 @@ def mask(filter: Filter, items_read: tuple[Band, ...] | None = None) -> Mask | N
     """The mask that the band items make, or None where they don't make one.
 
     They don't where a part of them can't be read, where bands are out of order, overlap or leave the
-    range from 0 to Nyquist, and where nothing is passed. Findings say which of it is the case.
+    range from 0 to Nyquist, where edges are too close, and where nothing is passed. Findings say which of
+    it is the case.
     """
     if filter.is_unknown("bands") or filter.is_unknown("sample_rate") or filter.is_unknown("phase"):
         return None
@@ -56,7 +65,9 @@ def mask(filter: Filter, items_read: tuple[Band, ...] | None = None) -> Mask | N
     for band in bands(filter) if items_read is None else items_read:
         if band.low is None or band.high is None or band.least is None or band.most is None:
             return None
-        if not 0.0 <= band.low < band.high <= math.pi * (1.0 + 1e-12) or not band.least < band.most:
+        if not 0.0 <= band.low < band.high <= math.pi * (1.0 + 1e-12):
+            return None
+        if not band.most - band.least >= LEAST_HEIGHT_DB:
             return None
         if band.kind == "stop" and band.relative and band.most >= 0.0:
             return None
@@ -75,10 +86,21 @@ def mask(filter: Filter, items_read: tuple[Band, ...] | None = None) -> Mask | N
     for before, after in zip(ordered, ordered[1:], strict=False):
         if after.low < before.high or (after.low == before.high and "pass" in (before.kind, after.kind)):
             return None
-    if not any(item.kind == "pass" for item in items):
+    if not any(item.kind == "pass" for item in items) or too_close(items):
         return None
     phase = filter.text("phase")
     return Mask(tuple(items), "linear" if phase == "linear" else "minimum" if phase == "minimum" else "any")
+
+
+def too_close(items: Iterable[Band | MaskBand]) -> tuple[float, float] | None:
+    """The first two edges, 0 Hz and Nyquist among them, that differ by less than `LEAST_WIDTH`; rad/sample."""
+    edges = {0.0, math.pi}
+    for item in items:
+        edges.update(min(edge, math.pi) for edge in (item.low, item.high) if edge is not None)
+    for low, high in itertools.pairwise(sorted(edges)):
+        if high - low < LEAST_WIDTH:
+            return low, high
+    return None
 
 
 def _band(filter: Filter, index: int, kind: str, rate_hz: float | None) -> Band:

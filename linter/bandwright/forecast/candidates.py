@@ -94,8 +94,9 @@ def _iir(
 def _fir(
     filter: Filter, mask: Mask, row: FamilyRow, structure: str | None, allowed: bool, answers: Answers
 ) -> Candidate:
+    bounded = filter.text("transitions") != "unbounded"
     if row.name == "equiripple":
-        estimate = fir_length.equiripple_length(mask)
+        estimate = fir_length.equiripple_length(mask, bounded)
     else:
         window = fir_length.kaiser_window_length(mask)
         estimate = window.length if window is not None else None
@@ -103,7 +104,6 @@ def _fir(
         return Candidate(
             row.name, "fir", structure, allowed, why_not="its length can't be told for this mask"
         )
-    bounded = filter.text("transitions") != "unbounded"
     question = FirLength(mask, bounded) if row.name == "equiripple" else None
     if estimate.low > limits.MAX_EXACT_TAPS:
         question = None

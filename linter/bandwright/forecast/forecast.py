@@ -10,6 +10,7 @@ from collections.abc import Callable, Iterator
 from dataclasses import replace
 from typing import Literal, TypeVar
 
+from bandwright import limits
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Filter
 from bandwright.forecast import bands, summary
@@ -103,8 +104,13 @@ class Forecast:
         return figure.value if figure is not None else math.inf
 
     def design(self, one: Candidate) -> Design | None:
-        """The reference design of an IIR candidate; None for FIR, or where its order misses the mask."""
-        if one.order is None or one.least_order is None or one.order < one.least_order:
+        """The reference design of an IIR candidate; None for FIR, or where its order misses the mask.
+
+        None too where a pinned order is beyond `limits.MAX_IIR_ORDER`.
+        """
+        if one.order is None or one.least_order is None:
+            return None
+        if not one.least_order <= one.order <= limits.MAX_IIR_ORDER:
             return None
         theory, select, order = FAMILIES[one.family].theory, self.selectivity, one.order
         if theory is None or select is None:

@@ -51,6 +51,8 @@ def gaps(filter: Filter) -> tuple[Gap, ...]:
         low, high = filter.get(*below), filter.get(*above)
         if before.kind == after.kind or before.high is None or after.low is None or not low or not high:
             continue
+        if not 0.0 < before.high < after.low:
+            continue
         stop = below if before.kind == "stop" else above
         found.append(Gap(before.high, after.low, low.written, high.written, below, above, stop))
     return tuple(found)

@@ -66,7 +66,7 @@ def neighbours(filter: Filter, path: Path, answers: Answers) -> tuple[Neighbour,
     An edge moves away from its transition; a level is halved and doubled, or moved by 10 dB. Those that
     make no mask are left out. Nothing is returned where the quantity is no number of a mask.
     """
-    own = filter.quantity(*path)
+    own = filter.quantity(*path) if path[:1] == ("bands",) else None
     if own is None or bands.mask(filter) is None:
         return ()
     found = []

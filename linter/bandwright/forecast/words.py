@@ -25,7 +25,7 @@ def shown(figure: Figure | None, factor: float = 1.0) -> str:
 
 def number(value: float) -> str:
     """A number in three digits, or in as many as it has before the point."""
-    if value == round(value) or abs(value) >= 100.0:
+    if value == round(value) or abs(value) >= 99.95:
         return f"{value:.0f}"
     return f"{value:.{2 - math.floor(math.log10(max(abs(value), 1e-3)))}f}"
 

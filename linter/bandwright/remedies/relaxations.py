@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 
 from bandwright.bandfile import quantities
-from bandwright.bandfile.values import Path, Place, Quantity
+from bandwright.bandfile.values import Filter, Path, Place, Quantity
 from bandwright.forecast import gaps
 from bandwright.forecast.forecast import MAXIMA, Forecast
+from bandwright.forecast.gaps import Gap
 from bandwright.forecast.reliefs import reliefs
 from bandwright.remedies.change import Change, Remedy
 
@@ -68,11 +69,11 @@ def _widened(forecast: Forecast, most: int) -> Iterator[Change]:
         edge = filter.quantity(*one.stop)
         if edge is None or one.width >= width:
             continue
-        own, other = (one.low, one.high) if one.stop == one.below else (one.high, one.low)
-        number = edge.number * (other + (own - other) * width / one.width) / own
-        rounded = quantities.round_outward(number, "up" if number > edge.number else "down", edge.number)
-        moves.append((one.stop, edge, Quantity(rounded, edge.unit)))
-    if moves and all(after.number > 0 for _, _, after in moves):
+        after = _moved(one, edge, width)
+        if after is None:
+            return
+        moves.append((one.stop, edge, after))
+    if moves:
         words = " and ".join(
             f"from {quantities.show_quantity(before)} to {quantities.show_quantity(after)}"
             for _, before, after in moves
@@ -115,6 +116,45 @@ def release_order(forecast: Forecast, place: Place) -> Iterator[Change]:
         "Leave the order to the mask: {after[family]} order {after[order]}",
         ((("order",), None),),
     )
+
+
+def drop_order(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Remove an order that pins nothing."""
+    yield Change("keeps-requirement", "Remove the order", ((("order",), None),))
+
+
+def even_transitions(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Widen the transition whose stop edge stands at `place` to the width of the next narrowest."""
+    wider = evened(forecast.filter, gaps.gaps(forecast.filter))
+    if wider is not None:
+        before, after = forecast.filter.quantity(*place.path), wider[1]
+        if before is not None:
+            yield Change(
+                "changes-requirement",
+                f"Move the stop edge from {quantities.show_quantity(before)} to"
+                f" {quantities.show_quantity(after)}: {{after[taps]}} taps instead of {{before[taps]}}",
+                ((place.path, quantities.show_quantity(after)),),
+            )
+
+
+def evened(filter: Filter, found: Sequence[Gap]) -> tuple[Gap, Quantity] | None:
+    """The narrowest transition, and the stop edge that makes it as wide as the next narrowest."""
+    if len(found) < 2:
+        return None
+    narrow, other = sorted(found, key=lambda gap: gap.width)[:2]
+    edge = filter.quantity(*narrow.stop)
+    moved = _moved(narrow, edge, other.width) if edge is not None else None
+    return (narrow, moved) if moved is not None else None
+
+
+def _moved(gap: Gap, edge: Quantity, width: float) -> Quantity | None:
+    """The stop edge of a transition that is to have this width, rounded outward; None below 0 Hz."""
+    own, other = (gap.low, gap.high) if gap.stop == gap.below else (gap.high, gap.low)
+    number = edge.number * (other + (own - other) * width / gap.width) / own
+    if not number > 0:
+        return None
+    rounded = quantities.round_outward(number, "up" if number > edge.number else "down", edge.number)
+    return Quantity(rounded, edge.unit)
 
 
 def next_order(forecast: Forecast, place: Place) -> Iterator[Change]:

@@ -206,3 +206,15 @@ def test_a_root_of_the_upper_half_plane_stands_for_itself() -> None:
     root = Root(0.3, 0.19, pair=True)
     # |z| = sqrt(1 - 0.19) = 0.9
     assert root.z == pytest.approx(cmath.rect(0.9, 0.3))
+
+
+@pytest.mark.parametrize("name", FAMILIES)
+def test_a_centred_design_has_as_much_room_above_as_below(name: str) -> None:
+    select = _selective(from_edges("low-pass", (0.6, 0.75), 0.5, 45.0))
+    least = iir.least_order(FAMILIES[name], select)
+    assert least is not None
+    for order in (least.order, least.order + 1):
+        design = iir.reference_design(FAMILIES[name], select, order, centred=True)
+        gains = [response.gain_db(design, 0.6 * i / 3000) for i in range(3001)]
+        assert max(gains) < 0.0
+        assert min(gains) + 0.5 == pytest.approx(-max(gains), abs=1e-5)

@@ -40,6 +40,11 @@ def configure(parser: Parser) -> None:
         default="computed",
         help="how sure the figures should be at least: estimated (quick), computed (default) or proved",
     )
+    parser.add_argument(
+        "--plot",
+        metavar="FILE.svg",
+        help="also draw the mask of one filter and the responses of its candidates",
+    )
 
 
 def run(arguments: Namespace) -> int:
@@ -52,6 +57,9 @@ def run(arguments: Namespace) -> int:
     text = decoded(arguments.file)
     document = reader.read(text.text, fault=text.fault)
     chosen = _chosen(document, arguments.filter, arguments.file)
+    if arguments.plot is not None and len(chosen) > 1:
+        names = ", ".join(filter.name for _, filter in chosen)
+        raise CommandError(f"{arguments.file}: a plot shows one filter; name one of {names}.")
     # All figures of all structures are in the JSON; the text shows those of the filter's own structure.
     questions = forecast_table.questions if arguments.form == "text" else _all_questions
     checker = Checker()
@@ -63,6 +71,10 @@ def run(arguments: Namespace) -> int:
             forecast = _settled(forecast, questions, checker)
         forecasts.append((line, forecast))
     checker.progress.clear()
+    if arguments.plot is not None:
+        from bandwright.faces.command.plotting import write_plot
+
+        write_plot(forecasts[0][1], arguments.plot)
     if arguments.form == "json":
         from bandwright.faces.command.formats import forecast_json
 

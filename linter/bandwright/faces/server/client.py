@@ -27,6 +27,12 @@ class Client:
     """The edit of a code action may come when the user has chosen it."""
     literal_actions: bool = False
     """Code actions may carry edits; without this only commands could be offered."""
+    markdown_completion: bool = False
+    """In the documentation of completions; otherwise plain text."""
+    snippets: bool = False
+    """Completions may hold places to fill in."""
+    nested_outline: bool = False
+    """The outline may have bands inside their filters."""
 
 
 def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Client:
@@ -37,6 +43,8 @@ def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Clien
 
     formats = get_capability(capabilities, "text_document.hover.content_format", None) or []
     tags = get_capability(capabilities, "text_document.publish_diagnostics.tag_support.value_set", None) or []
+    document = "text_document.completion.completion_item.documentation_format"
+    documents = get_capability(capabilities, document, None) or []
     lazy = get_capability(capabilities, "text_document.code_action.resolve_support.properties", None) or []
     versioned = says("workspace.workspace_edit.document_changes")
     return Client(
@@ -48,4 +56,7 @@ def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Clien
         annotated_edits=versioned and says("workspace.workspace_edit.change_annotation_support"),
         resolves_edits="edit" in lazy and says("text_document.code_action.data_support"),
         literal_actions=says("text_document.code_action.code_action_literal_support"),
+        markdown_completion=bool(documents) and documents[0] == types.MarkupKind.Markdown,
+        snippets=says("text_document.completion.completion_item.snippet_support"),
+        nested_outline=says("text_document.document_symbol.hierarchical_document_symbol_support"),
     )

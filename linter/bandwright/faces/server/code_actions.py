@@ -6,7 +6,6 @@ client sends along are not relied on: they may be of an older version.
 
 from __future__ import annotations
 
-import asyncio
 from collections.abc import Iterable
 from typing import Any
 
@@ -18,8 +17,7 @@ from bandwright.bandfile.values import Span, TextEdit
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.diagnostics import diagnostic
 from bandwright.faces.server.fix_all import safe_edits
-from bandwright.faces.server.session import OpenFile, Session
-from bandwright.forecast.questions import Answer, Question
+from bandwright.faces.server.session import OpenFile, Session, UnansweredError, unanswered
 
 QUICK_FIX = types.CodeActionKind.QuickFix.value
 FIX_ALL = "source.fixAll.bandwright"
@@ -92,27 +90,18 @@ async def _quick_fixes(
 async def _offers(session: Session, file: OpenFile, finding: Finding, *, wait: bool) -> tuple[Offer, ...]:
     """The remedies of a finding; none where the file was edited meanwhile.
 
-    Where the user waits for them, the questions that they ask are answered one by one, and messages are
-    looked at between. A light bulb that comes by itself shows what is known already.
+    Where the user asked for them, the questions that they ask are waited for. A light bulb that comes by
+    itself shows what is known already.
     """
     document = session.read(file)
-    ask = _raise_unanswered if wait else None
+    ask = unanswered if wait else None
     while file.document is document:
         try:
             return offer(document, finding, session.answers.kept, ask, session.memo)
-        except _UnansweredError as unanswered:
-            session.answer(unanswered.question)
-            await asyncio.sleep(0)
+        except UnansweredError as missing:
+            if not await session.answer(missing.question):
+                ask = None
     return ()
-
-
-class _UnansweredError(Exception):
-    def __init__(self, question: Question) -> None:
-        self.question = question
-
-
-def _raise_unanswered(question: Question) -> Answer:
-    raise _UnansweredError(question)
 
 
 def _quick_fix(session: Session, client: Client, file: OpenFile, finding: Finding, each: Offer) -> Action:

@@ -9,13 +9,14 @@ from typing import Any
 from lsprotocol import types
 
 from bandwright.analysis.types import Finding
-from bandwright.faces.server import code_actions, hover, text_sync
+from bandwright.faces.server import code_actions, completion, hover, text_sync
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.diagnostics import Texts
 from bandwright.faces.server.session import OpenFile, Session
 
 REQUESTS: dict[str, Callable[[Session, Client, Any], Awaitable[Any]]] = {
     types.TEXT_DOCUMENT_HOVER: hover.hover,
+    types.TEXT_DOCUMENT_COMPLETION: completion.completion,
     types.TEXT_DOCUMENT_CODE_ACTION: code_actions.code_actions,
     types.CODE_ACTION_RESOLVE: code_actions.resolve,
 }
@@ -57,6 +58,10 @@ class Features:
             NOTIFICATIONS[method](self._session, params)
         except Exception as error:
             self._failed(method, error)
+
+    def leave(self) -> None:
+        """Let go of everything, as the process ends."""
+        self._session.leave()
 
     def _publish(self, file: OpenFile, findings: tuple[Finding, ...]) -> None:
         texts = self._texts.setdefault(file.uri, Texts())

@@ -2,28 +2,29 @@
 
 from __future__ import annotations
 
-import asyncio
 from difflib import SequenceMatcher
 
+from bandwright.analysis.analyse import Memo
 from bandwright.analysis.mend import mend
 from bandwright.bandfile.values import Span, TextEdit
 from bandwright.faces.server.positions import lines_of
-from bandwright.faces.server.session import OpenFile, Session
+from bandwright.faces.server.session import OpenFile, Session, UnansweredError, unanswered
 
 
 async def safe_edits(session: Session, file: OpenFile) -> tuple[TextEdit, ...]:
-    """The edits that the bulk fix makes; messages are looked at between its rounds.
+    """The edits that the bulk fix makes; none where the file was edited before they were found.
 
-    None are left where the file was edited meanwhile.
+    A question that comes up is waited for, and the work is done again: what is known by then is kept.
     """
-    document = session.read(file)
-    text = document.text
-    for mended, _ in mend(document, session.answers.kept, session.answer, session.memo, session.today()):
-        text = mended.text
-        await asyncio.sleep(0)
-        if file.document is not document:
-            return ()
-    return changed_lines(document.text, text)
+    document, memo, answers = session.read(file), Memo(), session.answers.kept
+    while file.document is document:
+        try:
+            *_, (mended, _) = (document, ()), *mend(document, answers, unanswered, memo, session.today())
+            return changed_lines(document.text, mended.text)
+        except UnansweredError as missing:
+            if not await session.answer(missing.question):
+                break
+    return ()
 
 
 def changed_lines(before: str, after: str) -> tuple[TextEdit, ...]:

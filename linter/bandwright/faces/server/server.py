@@ -22,6 +22,8 @@ if TYPE_CHECKING:
 
 REQUESTS: dict[str, Any] = {
     types.TEXT_DOCUMENT_HOVER: None,
+    # After these a key, a value, a unit or the second half of a finding's id begins.
+    types.TEXT_DOCUMENT_COMPLETION: types.CompletionOptions(trigger_characters=[" ", "{", "[", ",", "/"]),
     types.TEXT_DOCUMENT_CODE_ACTION: types.CodeActionOptions(
         code_action_kinds=[types.CodeActionKind.QuickFix, "source.fixAll.bandwright"], resolve_provider=True
     ),
@@ -131,4 +133,6 @@ class Server(LanguageServer):
 
     def client_left(self) -> None:
         """End the process: with 0 if the client had said `shutdown`, else with 1."""
+        if "features" in self.__dict__:  # and so in use
+            self.features.leave()
         self._finish(0 if self.protocol.is_shut_down else 1)

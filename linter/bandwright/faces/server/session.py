@@ -2,22 +2,24 @@
 
 Everything happens in the one event loop. Each open file has one task, which starts afresh with every
 edit: it reads the text, analyses in slices what has changed, publishes, and once the user has paused
-answers the open questions one by one. An edit cancels it, so nothing is published for an old version.
+has the open questions answered. An edit cancels it, so nothing is published for an old version.
 """
 
 from __future__ import annotations
 
 import asyncio
 import time
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
 
+from bandwright import limits
 from bandwright.analysis.analyse import Memo, analyse_filter
 from bandwright.analysis.present import in_order, of_block
 from bandwright.analysis.types import Analysis, Finding
 from bandwright.bandfile.reader import read
 from bandwright.bandfile.values import Document, Filter
 from bandwright.faces.server.answers import Answers, Lookups
+from bandwright.faces.server.asking import Asking
 from bandwright.faces.server.positions import Encoding, LineIndex
 from bandwright.forecast.questions import Answer, Question
 
@@ -25,7 +27,23 @@ SLICE_S = 0.005
 """How long the loop is kept before it looks at messages again. What is found does not depend on it."""
 
 QUIET_S = 0.15
-"""How long nobody has typed before questions are answered."""
+"""How long nobody has typed before questions are asked."""
+
+
+class UnansweredError(Exception):
+    """Work can't go on without this answer; it is done again when the answer is there."""
+
+    def __init__(self, question: Question) -> None:
+        self.question = question
+
+
+def unanswered(question: Question) -> Answer:
+    """In the place of an answer, where nothing may hold up the loop.
+
+    Raises:
+        UnansweredError: always.
+    """
+    raise UnansweredError(question)
 
 
 @dataclass(eq=False)
@@ -70,8 +88,9 @@ class Session:
         """`publish` gets the problems of a file whenever they change, `failed` every defect."""
         self.files: dict[str, OpenFile] = {}
         self.answers = Answers()
-        self.memo = Memo()
+        self.memo = Memo(limits.MAX_RECENT_ANALYSES)
         self._encoding = encoding
+        self._asking = Asking(self._keep)
         self._publish = publish
         self._failed = failed
         self.today = today
@@ -159,13 +178,18 @@ class Session:
             file.wanted = new
             self._start(file)
 
-    def answer(self, question: Question) -> Answer:
-        """The exact answer to a question, kept for all. It holds the loop while it is computed."""
+    async def answer(self, question: Question) -> bool:
+        """Wait for the answer to a question that a user waits for; False where there will be none."""
         if question not in self.answers.kept:
-            from bandwright.exact.answer import answer  # numpy is loaded when something is asked
+            await self._asking.any_of([question], urgent=True)
+        return question in self.answers.kept
 
-            self.answers.add(question, answer(question), self._in_use)
-        return self.answers.kept[question]
+    def leave(self) -> None:
+        """End the workers."""
+        self._asking.close()
+
+    def _keep(self, question: Question, answer: Answer) -> None:
+        self.answers.add(question, answer, self._in_use)
 
     def _in_use(self) -> set[Question]:
         return {
@@ -189,7 +213,7 @@ class Session:
         try:
             document = self.read(file)
             await self._analyse(file, document)
-            while await self._answer_next(file):
+            while await self._answers_came(file):
                 await self._analyse(file, document)
         except Exception as error:
             self._failed(f"analysis of {file.uri}", error)
@@ -246,21 +270,18 @@ class Session:
             file.shown = problems
             self._publish(file, problems)
 
-    async def _answer_next(self, file: OpenFile) -> bool:
-        """Wait for a pause, then answer one open question of the file; False where there is none."""
-        question = next(self._open_questions(file), None)
-        if question is None:
+    async def _answers_came(self, file: OpenFile) -> bool:
+        """Wait for a pause, then for an answer that the file can use; False where nothing is open."""
+        if not self._open_questions(file):
             return False
         while (rest_s := self._last_edit_s + QUIET_S - time.monotonic()) > 0.0:
             await asyncio.sleep(rest_s)
-        await asyncio.sleep(0)
-        self.answer(question)
+        if questions := self._open_questions(file):
+            await self._asking.any_of(questions)
         return True
 
-    def _open_questions(self, file: OpenFile) -> Iterator[Question]:
+    def _open_questions(self, file: OpenFile) -> list[Question]:
         """What findings wait for, in the order of the file, then what hovers would like to know."""
-        for analysis in file.analyses.values():
-            for question, _ in analysis.open:
-                if question not in self.answers.kept:
-                    yield question
-        yield from (question for question in file.wanted if question not in self.answers.kept)
+        of_findings = (question for one in file.analyses.values() for question, _ in one.open)
+        every = dict.fromkeys((*of_findings, *file.wanted))
+        return [question for question in every if question not in self.answers.kept]

@@ -27,11 +27,15 @@ class Token:
 
 def token_at(document: Document, line: int, column: int) -> Token | None:
     """The token that contains the place, or ends there; None between tokens."""
-    # The first block is the top level, around all others.
-    index = bisect_right(document.blocks, line, lo=1, key=lambda block: block.first_line) - 1
+    index = block_at(document, line)
     if index > 0 and (token := _in_block(document, index, line, column)) is not None:
         return token
     return _in_block(document, 0, line, column)
+
+
+def block_at(document: Document, line: int) -> int:
+    """The index of the block that a line belongs to; 0, the top level, ahead of all others."""
+    return bisect_right(document.blocks, line, lo=1, key=lambda block: block.first_line) - 1
 
 
 def _in_block(document: Document, index: int, line: int, column: int) -> Token | None:

@@ -42,9 +42,9 @@ _NEAR = 1.2
 """From this ratio of peak to level on, a second parabola finds the top of each lobe."""
 _LEJA_DEGREE = 40
 """Up to this degree the exchange starts from Leja points."""
-_LEJA_POINTS = 100
 _LEJA_CANDIDATES = 8
 """Candidates for each of them."""
+_QUADRATURE = 256
 _ROUGH = 0.3
 """How near the level comes to the peak in the designs that only give a start."""
 _COEFFICIENT_ERROR = 1e-7
@@ -134,13 +134,12 @@ def _exchange(problem: _Problem, start: Floats, close: float, decide: float) -> 
 
 
 def _first_references(problem: _Problem, bands: Sequence[AmplitudeBand]) -> Floats:
-    """Leja points for low degrees; else the references of half the degree, with Leja's share of new ones."""
+    """Leja points for low degrees, else the references of half the degree and as many new ones."""
     if problem.degree <= _LEJA_DEGREE:
-        return np.sort(problem.leja(problem.degree + 2))
-    points = problem.leja(_LEJA_POINTS)
-    share = problem.share(points)
+        return problem.leja(problem.degree + 2)
+    share = problem.share()
     halvings = (problem.degree // _LEJA_DEGREE).bit_length()
-    points = np.sort(points[: 2 + (problem.degree >> halvings)])
+    points = problem.leja(2 + (problem.degree >> halvings))
     for halving in range(halvings, 0, -1):
         taps = 2 * (problem.degree >> halving) + 2 - problem.taps % 2
         smaller = _Problem(taps, bands)
@@ -202,13 +201,19 @@ class _Problem:
             for _ in range(count - 1):
                 logs += np.log(np.abs(x - x[chosen[-1]]))
                 chosen.append(int(np.argmax(logs)))
-        return points[chosen]
+        return np.asarray(points[np.sort(chosen)])
 
-    def share(self, points: Floats) -> Floats:
-        """The share of each band in points that come one by one: the slope of its count."""
-        within = self.band(points)[:, None] == np.arange(len(self.low))
-        slopes: Floats = np.polyfit(np.arange(len(points)), np.cumsum(within, axis=0), 1)[0]
-        return slopes
+    def share(self) -> Floats:
+        """The share of each band in the references as their number grows; touching bands split by width."""
+        firsts = np.flatnonzero(np.append(True, self.low[1:] - self.high[:-1] > 2.0 * self._gap))
+        lasts = np.append(firsts[1:], len(self.low)) - 1
+        widths = self.high - self.low
+        group = np.cumsum(np.isin(np.arange(len(widths)), firsts)) - 1
+        together = np.bincount(group, widths)
+        wide = together > 0.0
+        shares = np.zeros(len(firsts))
+        shares[wide] = _equilibrium(self.low[firsts[wide]], self.high[lasts[wide]])
+        return np.asarray(shares[group] * widths / np.where(wide, together, 1.0)[group])
 
     def spread(self, start: Floats, share: Floats | None = None) -> Floats:
         """As many references as are needed, as dense in each band as `start`.
@@ -464,6 +469,29 @@ def _move(interpolant: _Interpolant, points: Floats, sizes: Floats, which: Indic
     there = np.abs(interpolant.error(w))
     larger = np.isfinite(there) & (there > sizes[which])
     points[which[larger]], sizes[which[larger]] = w[larger], there[larger]
+
+
+def _equilibrium(low: Floats, high: Floats) -> Floats:
+    """The equilibrium measure of each of these disjoint intervals of frequency, in x = cos w.
+
+    Its density is |q| / sqrt|h| (Widom 1969, from memory), where h has its zeros at all ends in x, and q is
+    the polynomial with one root in each gap whose integral with 1 / sqrt|h| vanishes over every gap.
+    """
+    ends = np.cos(np.column_stack([high, low])[::-1].ravel())
+    middles, halves = 0.5 * (ends[1:] + ends[:-1]), 0.5 * (ends[1:] - ends[:-1])
+    # Gauss-Chebyshev nodes for bands and gaps by turns, whose weights hold the roots of their own two ends.
+    nodes = np.cos((np.arange(_QUADRATURE) + 0.5) * (math.pi / _QUADRATURE))
+    x = middles[:, None] + halves[:, None] * nodes
+    distances = np.abs(x[:, :, None] - ends)
+    own = np.arange(len(middles))
+    distances[own, :, own] = distances[own, :, own + 1] = 1.0
+    weights = 1.0 / np.sqrt(distances.prod(axis=2))
+    factors = x - middles[1::2, None, None]
+    basis = np.cumprod(np.concatenate([np.ones((1, *x.shape)), factors]), axis=0)
+    integrals = np.mean(basis * weights, axis=2)
+    coefficients = np.append(np.linalg.solve(integrals[:-1, 1::2].T, -integrals[-1, 1::2]), 1.0)
+    masses = np.mean(np.abs(np.tensordot(coefficients, basis, 1)) * weights, axis=1)[::2]
+    return np.asarray(masses[::-1] / masses.sum())
 
 
 def _log_weights(x: Floats) -> Floats:

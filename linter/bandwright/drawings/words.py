@@ -1,0 +1,64 @@
+"""What a plot says in words: for readers of the picture, and for those who hear it."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+
+from bandwright.drawings.areas import most_db
+from bandwright.drawings.axes import Scale, label
+from bandwright.drawings.edges import Edge
+from bandwright.drawings.responses import Response
+from bandwright.forecast.forecast import Forecast
+from bandwright.theory.closed_form.types import Mask
+
+
+def title(forecast: Forecast) -> str:
+    """The filter's name and what it is."""
+    return f"{forecast.filter.name}: {forecast.summary()}"
+
+
+def caption(forecast: Forecast, mask: Mask, shown: Sequence[Response], frequency: Scale) -> str:
+    """What the reader has to know to read the plot, and what is not in it."""
+    said = ["Hatched: where the gain may not be."]
+    if any(one.chosen for one in shown) and len(shown) > 1:
+        said.append("Thick: what the forecast chooses.")
+    if any(band.relative for band in mask.bands if band.kind == "pass"):
+        said.append("The pass window may float; here its top is at 0 dB.")
+    if any(band.relative for band in mask.bands if band.kind == "stop"):
+        said.append("Stop levels count from the top of the pass window.")
+    if frequency.start > 0.0 or frequency.end < math.pi * (1.0 - 1e-9):
+        said.append("The frequencies shown are those around the edges; the outer bands go on beyond them.")
+    drawn = {one.family for one in shown}
+    left_out = [one for one in forecast.candidates if one.allowed and one.family not in drawn]
+    fir = [one.family for one in left_out if one.kind == "fir"]
+    if fir:
+        said.append(f"Not drawn: the FIR responses, {_and(fir)}.")
+    said += [f"Not drawn: {one.family}, {forecast.why_not(one)}." for one in left_out if one.kind == "iir"]
+    return " ".join(said)
+
+
+def description(forecast: Forecast, mask: Mask, shown: Sequence[Response], edges: Sequence[Edge]) -> str:
+    """The plot for somebody who does not see it."""
+    said = ["Gain in dB over frequency: above, the pass bands' window enlarged; below, the whole range."]
+    for band in mask.bands:
+        names = [edge.name.partition(" ")[2] for edge in edges if edge.item == band.item]
+        most = most_db(mask, band)
+        bounds = [
+            *([f"at least {_db(band.least)}"] if band.least is not None else []),
+            *([f"at most {_db(most)}"] if most is not None else []),
+        ]
+        said.append(f"{band.kind.capitalize()} {' '.join(names) or 'everywhere'}: {' and '.join(bounds)}.")
+    for one in shown:
+        chosen = ", which the forecast chooses" if one.chosen else ""
+        sets = [edge.name for edge in edges if one.family in edge.sets]
+        said.append(f"Drawn: {one.label}{chosen}" + (f"; its order is set by {_and(sets)}." if sets else "."))
+    return " ".join(said)
+
+
+def _and(words: Sequence[str]) -> str:
+    return " and ".join(words)
+
+
+def _db(level: float) -> str:
+    return f"{label(level, 3)} dB" if abs(level) < 1.0 else f"{level:.4g} dB"
