@@ -25,6 +25,7 @@ MAY_IMPORT: dict[str, tuple[str, ...]] = {
     "analysis": ("limits", "theory.closed_form", "bandfile", "forecast", "remedies", "findings"),
     "exact": ("limits", "theory", "forecast.questions"),
     "project": ("limits", "bandfile"),
+    "drawings": ("limits", "theory.closed_form", "forecast"),
     "public": (
         "limits",
         "theory",
@@ -46,6 +47,7 @@ MAY_IMPORT: dict[str, tuple[str, ...]] = {
         "analysis",
         "exact",
         "project",
+        "drawings",
     ),
 }
 """Room -> the other rooms that its modules may import. A name covers everything inside it."""
@@ -67,6 +69,7 @@ COLD = (
     "findings",
     "analysis",
     "project",
+    "drawings",
     "faces.command",
 )
 """Rooms on the way of a `check` that asks nothing: none of `NEVER_COLD` there, lazily or not."""

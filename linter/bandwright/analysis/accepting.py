@@ -53,21 +53,21 @@ def entries(filter: Filter) -> Iterator[Entry]:
         )
 
 
-def judge(filter: Filter, analysis: Analysis, today: str) -> Iterator[tuple[Hit, bool]]:
-    """Each hit of the filter with whether it is accepted, then hits about the entries themselves."""
+def judge(filter: Filter, analysis: Analysis, today: str) -> Iterator[tuple[Hit, Entry | None]]:
+    """Each hit of the filter with the entry that accepts it, then hits about the entries themselves."""
     listed = list(entries(filter))
     rate_hz = analysis.forecast.sample_rate_hz
     used: set[int] = set()
     for hit in analysis.hits:
         covering = [entry for entry in listed if _covers(entry, hit, today, rate_hz)]
         used.update(entry.index for entry in covering)
-        yield hit, bool(covering)
+        yield hit, covering[0] if covering else None
     waiting = {name for _, ids in analysis.open for name in ids}
     for entry in listed:
         if entry.index not in used and entry.finding not in waiting:
             problem = _problem(entry, analysis, today)
             if problem is not None:
-                yield problem, False
+                yield problem, None
 
 
 def _covers(entry: Entry, hit: Hit, today: str, rate_hz: float | None) -> bool:

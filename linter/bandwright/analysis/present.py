@@ -33,10 +33,10 @@ def of_block(
 ) -> Iterator[Finding]:
     """The findings of one block; those of its text only where its filter is not analysed."""
     for fault in document.blocks[index].faults:
-        yield _finding(document, index, _hit_of(fault), filter, accepted=False)
+        yield _finding(document, index, _hit_of(fault), filter, None)
     if filter is not None and analysis is not None:
-        for hit, accepted in accepting.judge(filter, analysis, today):
-            yield _finding(document, index, hit, filter, accepted)
+        for hit, entry in accepting.judge(filter, analysis, today):
+            yield _finding(document, index, hit, filter, entry)
 
 
 def in_order(findings: Iterable[Finding]) -> tuple[Finding, ...]:
@@ -51,7 +51,9 @@ def _hit_of(fault: Fault) -> Hit:
     return Hit(fault.id, fault.place, facts, fault.form, others)
 
 
-def _finding(document: Document, index: int, hit: Hit, filter: Filter | None, accepted: bool) -> Finding:
+def _finding(
+    document: Document, index: int, hit: Hit, filter: Filter | None, entry: accepting.Entry | None
+) -> Finding:
     rule = RULES[hit.id]
     related = [_related(document, index, place, words, filter) for place, words in hit.related]
     brought = device_line(document, hit.place, filter) if filter is not None else None
@@ -65,10 +67,11 @@ def _finding(document: Document, index: int, hit: Hit, filter: Filter | None, ac
         span_of(document, index, hit.place, filter),
         block.name if block.kind == "filter" else None,
         tuple(related),
-        accepted,
+        entry is not None,
         rule.tag,
         index,
         hit,
+        entry.reason if entry is not None else "",
     )
 
 

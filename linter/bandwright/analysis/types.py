@@ -47,6 +47,8 @@ class Finding:
     block: int
     """Index of its block in the document."""
     hit: Hit
+    reason: str = ""
+    """Why it is accepted, in the user's words; empty where it is not."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -106,7 +106,7 @@ def context_at(document: Document, line: int, column: int) -> Context | None:
     before = whole[:column]
     if not before.strip() and whole[column:][:1] in (" ", "\t") and whole.strip():
         return None  # within an indent
-    reading.take(line, before, cursor=True)
+    reading.take(line, before, cursor=whole)
     if reading.slot is None:
         return None
     begin = reading.token if reading.token is not None else column
@@ -196,9 +196,13 @@ class _Reading:
     # ------------------------------------------------------------------------------------------- lines
 
     def take(
-        self, number: int, text: str, *, cursor: bool = False, skip: tuple[int, int, int] | None = None
+        self, number: int, text: str, *, cursor: str | None = None, skip: tuple[int, int, int] | None = None
     ) -> None:
-        """Read the next line. `skip`: line, start and end of a word that does not count as there."""
+        """Read the next line.
+
+        `cursor`: the whole line, where `text` is what of it stands before the cursor. `skip`: line, start
+        and end of a word that does not count as there.
+        """
         self.skip = skip if skip is not None and skip[0] == number else None
         self.slot = self.token = None
         at = len(text) - len(text.lstrip())
@@ -207,10 +211,10 @@ class _Reading:
             if not rest or at > self.literal:
                 return
             self.literal = None
-        if self.in_flow() and not self.left_open(at, rest):
+        if self.in_flow() and not self.left_open(at, rest or (cursor or "").strip(), cursor is not None):
             self.flow(text, at)
             return
-        if rest.startswith("#") or (not rest and not cursor):
+        if rest.startswith("#") or (not rest and cursor is None):
             return
         if at == 0 and self.section is not None and _is_top_key(rest):
             del self.stack[1:]
@@ -220,11 +224,11 @@ class _Reading:
     def in_flow(self) -> bool:
         return self.stack[-1].kind in ("map", "list", "pair")
 
-    def left_open(self, at: int, rest: str) -> bool:
+    def left_open(self, at: int, rest: str, at_cursor: bool) -> bool:
         """Whether a new line shows that the brackets above it were meant to end; they are ended then."""
         outer = next(one for one in self.stack if one.kind in ("map", "list"))
         nested = any(one.kind in ("entry", "item") for one in self.stack)
-        if not nested or not rest or rest[0] in "]},#":
+        if not nested or rest[:1] in tuple("]},#") or not (rest or at_cursor):
             return False
         if at < outer.column or (at == outer.column and _ENTRY_LIKE.match(rest)):
             del self.stack[self.stack.index(outer) :]
@@ -388,7 +392,8 @@ def _in_grammar(
     elif reading.slot == "key":
         row = grammar.key(where, path) if path else None
         kind = row.kind if row is not None else "mapping"
-        part = "key" if kind == "mapping" else "item" if kind == "list" else "value"
+        has_keys = bool(grammar.children(where, path))  # as an arithmetic has, that may be a name too
+        part = "item" if kind == "list" else "key" if kind == "mapping" or has_keys else "value"
         if part == "item":
             path = (*path, holder.items)
     return Context(where, path, part, span, typed, there, flow, has_colon, lead)

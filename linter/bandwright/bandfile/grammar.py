@@ -398,6 +398,7 @@ KEYS: Final[tuple[Key, ...]] = (
         "butterworth",
         where=_BOTH,
         names=tuple(FAMILIES),
+        unjudged_names=("bessel", "legendre", "least-squares", "half-band", "interpolated"),
     ),
     Key(
         ("order",),
@@ -419,6 +420,7 @@ KEYS: Final[tuple[Key, ...]] = (
         "cascade",
         where=_BOTH,
         names=tuple(STRUCTURES),
+        unjudged_names=("parallel", "lattice-ladder", "allpass-sum", "coupled", "state-space"),
     ),
     Key(
         ("arithmetic",),

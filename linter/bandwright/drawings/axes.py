@@ -109,6 +109,12 @@ def label(value: float, decimals: int) -> str:
     return text.replace("-", "\N{MINUS SIGN}") if float(text) else "0"
 
 
+def three_digits(value: float) -> str:
+    """A number in three digits, or in as many as it has before the point."""
+    shown = f"{abs(value):.3g}"
+    return label(value, 0 if "e+" in shown else len(f"{float(shown):.9f}".rstrip("0").partition(".")[2]))
+
+
 def _log_ticks(scale: Scale, most: int) -> list[tuple[float, str]]:
     choices = [_of_decades(scale, steps) for steps in _LOG_STEPS]
     return next((found for found in choices if len(found) <= most), choices[-1])

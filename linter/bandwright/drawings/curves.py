@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterable
 from typing import NamedTuple
 
@@ -40,7 +41,8 @@ def polylines(
 
     `knots` are frequencies where it may bend sharply: edges, the angles of poles and zeros. A stretch is
     halved while its middle is more than `BEND * step` pixels off the straight line and it is wider than
-    `step` / 2 pixels. Every point is a true one.
+    `step` / 2 pixels; points that a straight line passes within half of that are left out. Every point is a
+    true one.
     """
     top, bottom = sorted((level.first, level.last))
 
@@ -82,7 +84,28 @@ def polylines(
             runs.append([])
         if inside(point):
             runs[-1].append(point)
-    return [run for run in runs if len(run) > 1]
+    return [_thinned(run, 0.5 * BEND * step) for run in runs if len(run) > 1]
+
+
+def _thinned(run: list[Point], tolerance: float) -> list[Point]:
+    """The run without points that the line between its neighbours passes within the tolerance.
+
+    Douglas and Peucker 1973, from memory.
+    """
+    kept, open_stretches = {0, len(run) - 1}, [(0, len(run) - 1)]
+    while open_stretches:
+        first, last = open_stretches.pop()
+        start, end = run[first], run[last]
+        length = math.hypot(end.x - start.x, end.y - start.y) or 1.0
+        farthest, place = tolerance, 0
+        for at in range(first + 1, last):
+            across = (run[at].x - start.x) * (end.y - start.y) - (run[at].y - start.y) * (end.x - start.x)
+            if abs(across) > farthest * length:
+                farthest, place = abs(across) / length, at
+        if place:
+            kept.add(place)
+            open_stretches += [(first, place), (place, last)]
+    return [run[at] for at in sorted(kept)]
 
 
 def _starts(knots: Iterable[float], frequency: Scale, step: float) -> list[float]:

@@ -39,15 +39,17 @@ class Edge:
     """The highest gain that its band admits."""
     sets: tuple[str, ...]
     """The families drawn whose order it sets."""
-    alone: bool = False
-    """Whether it sets the orders of all of them."""
+    orders: int
+    """How many orders there are to be set."""
 
     @property
     def text(self) -> str:
         """Its name, and which orders it sets."""
         if not self.sets:
             return self.name
-        return f"{self.name}, sets {'the order' if self.alone else ' and '.join(self.sets)}"
+        if len(self.sets) == self.orders:
+            return f"{self.name}, sets the order"
+        return f"{self.name}, sets {len(self.sets)} of {self.orders} orders"
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,7 +81,7 @@ def named_edges(forecast: Forecast, mask: Mask, shown: Sequence[Response]) -> tu
                     "right" if side == "low" else "left",
                     most_db(mask, band),
                     sets,
-                    alone=len(sets) == len(bound),
+                    len(bound),
                 )
             )
     return tuple(sorted(found, key=lambda edge: edge.w))

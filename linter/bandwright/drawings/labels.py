@@ -111,8 +111,8 @@ def raise_flags(
 ) -> list[tuple[int, Side]] | None:
     """A row, counted from the panels upward, and a side for every flag; None where there is no way.
 
-    No flag covers another one or the line of one above it. A flag on its other side counts as much as two
-    rows.
+    No flag covers another one or the line of one above it. Flags on their best sides are worth
+    a second row, and hardly a third.
     """
     own = tuple(flag.side for flag in flags)
     free: Sequence[tuple[Side, ...]] = [("left", "right") for _ in flags]
@@ -125,7 +125,7 @@ def raise_flags(
         rows = _rows([flag.x for flag in flags], spans, gap)
         if rows is None:
             continue
-        cost = max(rows) + 2 * sum(side != best_side for side, best_side in zip(sides, own, strict=True))
+        cost = max(rows) ** 2 + 2 * sum(side != best_side for side, best_side in zip(sides, own, strict=True))
         if best is None or cost < best[0]:
             best = cost, list(zip(rows, sides, strict=True))
     return best[1] if best is not None else None

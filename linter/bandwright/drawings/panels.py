@@ -17,13 +17,15 @@ from bandwright.drawings.svg import element, escaped, line, number, rectangle
 
 SIZE = 12.0
 TICK = 5.0
-TICK_ROW = 26.0
+MOST_TICKS = 10
+TITLE_X, LABEL_GAP = 18.0, 8.0
+TICK_ROW = 22.0
 """Pixels between two ticks of the gain, about at least."""
 MARK_EVERY = 110.0
 """Pixels along a curve between its markers."""
 MARK_ROOM = 8.0
 """Pixels that a marker takes around it."""
-NOTE_ROW = 14.0
+NOTE_ROW = 15.0
 """Pixels between two notes beside a panel."""
 
 Lines = list[list[Point]]
@@ -46,7 +48,7 @@ class Panel:
 def ground(panel: Panel, forbidden: Sequence[Area]) -> Iterator[str]:
     """Grid, forbidden areas and frame."""
     left, top, right, bottom = panel.box
-    for gain, _ in _gain_ticks(panel):
+    for gain, _ in gain_ticks(panel.level):
         y = panel.level.px(gain)
         yield line("grid", left, y, right, y)
     for area in forbidden:
@@ -68,13 +70,13 @@ def area_box(panel: Panel, area: Area) -> Box | None:
 def gain_axis(panel: Panel, title: str) -> Iterator[str]:
     """Ticks with their labels on the left, and the title beside them."""
     left, top, _, bottom = panel.box
-    for gain, text in _gain_ticks(panel):
+    for gain, text in gain_ticks(panel.level):
         y = panel.level.px(gain)
         yield line("frame", left - TICK, y, left, y)
         yield element(
-            "text", text, class_="quiet", x=left - 8.0, y=y + 4.0, font_size=SIZE, text_anchor="end"
+            "text", text, class_="quiet", x=left - LABEL_GAP, y=y + 4.0, font_size=SIZE, text_anchor="end"
         )
-    x, y = 18.0, 0.5 * (top + bottom)
+    x, y = TITLE_X, 0.5 * (top + bottom)
     yield element(
         "text",
         escaped(title),
@@ -102,8 +104,8 @@ def notes(panel: Panel, levels: Sequence[float]) -> Iterator[str]:
             class_="frame",
             points=f"{number(right)},{number(y)} {number(right + TICK)},{number(place)}",
         )
-        text = f"{axes.label(level, _decimals(level))} dB"
-        yield element("text", text, class_="ink", x=right + 8.0, y=place + 4.0, font_size=SIZE)
+        text = f"{axes.three_digits(level)} dB"
+        yield element("text", text, class_="ink", x=right + LABEL_GAP, y=place + 4.0, font_size=SIZE)
 
 
 def curve_lines(response: Response, lines: Lines) -> Iterator[str]:
@@ -125,7 +127,8 @@ def curve_marks(
     kept: list[tuple[float, float]] = []
     for run in pairs(lines):
         for x, y in labels.along(run, MARK_EVERY, phase * MARK_EVERY):
-            alone = all(math.dist((x, y), one) > 2.0 * MARK_ROOM for one in (*taken, *kept))
+            alone = all(math.dist((x, y), one) > 2.0 * MARK_ROOM for one in taken)
+            alone = alone and all(math.dist((x, y), one) > 0.5 * MARK_EVERY for one in kept)
             if alone and inside.left < x < inside.right and inside.top < y < inside.bottom:
                 kept.append((x, y))
                 yield mark(response.family, x, y)
@@ -136,11 +139,12 @@ def pairs(lines: Lines) -> list[list[tuple[float, float]]]:
     return [[(point.x, point.y) for point in run] for run in lines]
 
 
-def _gain_ticks(panel: Panel) -> list[tuple[float, str]]:
-    return axes.ticks(panel.level, round((panel.level.first - panel.level.last) / TICK_ROW))
+def gain_ticks(level: Scale) -> list[tuple[float, str]]:
+    """The gains to mark on a scale, with their labels."""
+    return axes.ticks(level, min(MOST_TICKS, round((level.first - level.last) / TICK_ROW)))
 
 
-def _decimals(level: float) -> int:
-    """How many a level takes to be told in three digits, at most."""
-    shown = f"{abs(level):.3g}"
-    return len(shown.partition(".")[2]) if "e" not in shown else 0
+def gain_axis_width(level: Scale) -> float:
+    """How many pixels the labels of a scale and its title take."""
+    widest = max(labels.text_width(text, SIZE) for _, text in gain_ticks(level))
+    return TITLE_X + 0.5 * SIZE + widest + 2.0 * LABEL_GAP

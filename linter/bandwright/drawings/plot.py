@@ -22,7 +22,7 @@ from bandwright.forecast.forecast import Forecast
 from bandwright.theory.closed_form.types import Mask
 
 WIDTH, MARGIN = 860.0, 12.0
-LEFT, RIGHT = 78.0, 774.0
+LEFT, RIGHT = 78.0, 768.0
 """Where the panels begin and end."""
 FLAGS_TOP = 38.0
 ENLARGED_HEIGHT, WHOLE_HEIGHT, PANEL_GAP = 150.0, 300.0, 16.0
@@ -30,9 +30,9 @@ TITLE_SIZE, SIZE, LINE = 16.0, 12.0, 17.0
 RING = 6.0
 
 MOST_TICKS = 9
-MOST_CHARACTERS = 40_000
+MOST_BYTES = 40_000
 STEPS = (1.0, 2.0, 4.0, 8.0)
-"""Coarser and coarser samples, in pixels, until the plot has no more than `MOST_CHARACTERS`."""
+"""Coarser and coarser samples, in pixels, until the plot has no more than `MOST_BYTES`."""
 
 HATCH = element(
     "pattern",
@@ -74,7 +74,7 @@ def plot(forecast: Forecast, designed: Sequence[Response] = ()) -> str:
     placed = layout(forecast, forecast.mask, (*responses(forecast), *designed))
     for step in STEPS:
         text = _document(forecast, placed, step)
-        if len(text) <= MOST_CHARACTERS:
+        if len(text.encode()) <= MOST_BYTES:
             break
     return text
 
@@ -84,21 +84,26 @@ def layout(forecast: Forecast, mask: Mask, shown: tuple[Response, ...]) -> Layou
     edges = named_edges(forecast, mask, shown)
     per_radian = _unit(forecast.sample_rate_hz)[1]
     shown_edges = sorted({edge.w * per_radian for edge in edges})
-    own = axes.frequency_scale(shown_edges, math.pi * per_radian, LEFT, RIGHT)
+    levels = Scale(*areas.enlarged(mask), ENLARGED_HEIGHT, 0.0), Scale(*areas.whole(mask), WHOLE_HEIGHT, 0.0)
+    left = max(LEFT, *(panels.gain_axis_width(level) for level in levels))
+    own = axes.frequency_scale(shown_edges, math.pi * per_radian, left, RIGHT)
     frequency = _times(own, 1.0 / per_radian)
     found = raised(edges, frequency, MARGIN, WIDTH - MARGIN)
     top = FLAGS_TOP + ROW * (1 + max((one.row for one in found), default=-1)) + 6.0
-    bottom = top + ENLARGED_HEIGHT
-    enlarged = Panel(frequency, Scale(*areas.enlarged(mask), bottom, top))
-    top = bottom + PANEL_GAP
-    whole = Panel(frequency, Scale(*areas.whole(mask), top + WHOLE_HEIGHT, top))
+    enlarged = Panel(frequency, _lowered(levels[0], top))
+    whole = Panel(frequency, _lowered(levels[1], enlarged.box.bottom + PANEL_GAP))
     return Layout(mask, shown, edges, found, enlarged, whole)
 
 
+def _lowered(level: Scale, by: float) -> Scale:
+    return level._replace(first=level.first + by, last=level.last + by)
+
+
 def _document(forecast: Forecast, placed: Layout, step: float) -> str:
+    left = placed.whole.box.left
     caption = words.caption(forecast, placed.mask, placed.shown, placed.whole.frequency)
-    rows = labels.wrapped(caption, SIZE, WIDTH - LEFT - MARGIN)
-    axes_bottom = placed.whole.box.bottom + 96.0
+    rows = labels.wrapped(caption, SIZE, WIDTH - left - MARGIN)
+    axes_bottom = placed.whole.box.bottom + 102.0
     height = axes_bottom + LINE * len(rows) + MARGIN
     title = words.title(forecast)
     parts = [
@@ -116,7 +121,7 @@ def _document(forecast: Forecast, placed: Layout, step: float) -> str:
         ),
         *_panels(placed, step),
         *_frequency_axes(forecast.sample_rate_hz, placed.whole),
-        *(_text(row, LEFT, axes_bottom + LINE * at, "quiet") for at, row in enumerate(rows)),
+        *(_text(row, left, axes_bottom + LINE * at, "quiet") for at, row in enumerate(rows)),
     ]
     return (
         element(
@@ -215,15 +220,15 @@ def _frequency_axes(rate_hz: float | None, panel: Panel) -> Iterator[str]:
         per_radian /= factor
     upper = (per_radian, f"Frequency, {unit}")
     lower = (1.0 / math.tau, "Fraction of the sample rate")
-    for top, (factor, title) in ((panel.box.bottom, upper), (panel.box.bottom + 42.0, lower)):
+    for top, (factor, title) in ((panel.box.bottom, upper), (panel.box.bottom + 46.0, lower)):
         own = _times(panel.frequency, factor)
         yield line("frame", own.first, top, own.last, top)
         for value in axes.small_ticks(own):
             yield line("frame", own.px(value), top, own.px(value), top + 3.0)
         for value, text in axes.ticks(own, MOST_TICKS):
             yield line("frame", own.px(value), top, own.px(value), top + panels.TICK)
-            yield _text(text, own.px(value), top + 17.0, "quiet", "middle")
-        yield _text(title, 0.5 * (own.first + own.last), top + 33.0, "ink", "middle")
+            yield _text(text, own.px(value), top + 19.0, "quiet", "middle")
+        yield _text(title, 0.5 * (own.first + own.last), top + 35.0, "ink", "middle")
 
 
 _UNITS = (("GHz", 1e9), ("MHz", 1e6), ("kHz", 1e3), ("Hz", 1.0))

@@ -6,7 +6,7 @@ import math
 from collections.abc import Sequence
 
 from bandwright.drawings.areas import most_db
-from bandwright.drawings.axes import Scale, label
+from bandwright.drawings.axes import Scale, three_digits
 from bandwright.drawings.edges import Edge
 from bandwright.drawings.responses import Response
 from bandwright.forecast.forecast import Forecast
@@ -31,10 +31,12 @@ def caption(forecast: Forecast, mask: Mask, shown: Sequence[Response], frequency
         said.append("The frequencies shown are those around the edges; the outer bands go on beyond them.")
     drawn = {one.family for one in shown}
     left_out = [one for one in forecast.candidates if one.allowed and one.family not in drawn]
-    fir = [one.family for one in left_out if one.kind == "fir"]
-    if fir:
-        said.append(f"Not drawn: the FIR responses, {_and(fir)}.")
-    said += [f"Not drawn: {one.family}, {forecast.why_not(one)}." for one in left_out if one.kind == "iir"]
+    if any(one.kind == "fir" for one in left_out):
+        fir = _and([one.family for one in left_out if one.kind == "fir"])
+        said.append(f"Not drawn: the FIR responses, {fir}.")
+    for reason in dict.fromkeys(forecast.why_not(one) for one in left_out if one.kind == "iir"):
+        iir = _and([one.family for one in left_out if forecast.why_not(one) == reason])
+        said.append(f"Not drawn: {iir}; {reason}.")
     return " ".join(said)
 
 
@@ -45,8 +47,8 @@ def description(forecast: Forecast, mask: Mask, shown: Sequence[Response], edges
         names = [edge.name.partition(" ")[2] for edge in edges if edge.item == band.item]
         most = most_db(mask, band)
         bounds = [
-            *([f"at least {_db(band.least)}"] if band.least is not None else []),
-            *([f"at most {_db(most)}"] if most is not None else []),
+            *([f"at least {three_digits(band.least)} dB"] if band.least is not None else []),
+            *([f"at most {three_digits(most)} dB"] if most is not None else []),
         ]
         said.append(f"{band.kind.capitalize()} {' '.join(names) or 'everywhere'}: {' and '.join(bounds)}.")
     for one in shown:
@@ -57,8 +59,5 @@ def description(forecast: Forecast, mask: Mask, shown: Sequence[Response], edges
 
 
 def _and(words: Sequence[str]) -> str:
-    return " and ".join(words)
-
-
-def _db(level: float) -> str:
-    return f"{label(level, 3)} dB" if abs(level) < 1.0 else f"{level:.4g} dB"
+    *first, last = words
+    return f"{', '.join(first)} and {last}" if first else last

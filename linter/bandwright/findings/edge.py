@@ -7,7 +7,7 @@ import math
 from collections.abc import Iterator
 
 from bandwright.bandfile import quantities
-from bandwright.bandfile.values import Filter, Path, Place
+from bandwright.bandfile.values import Filter, Path, Place, Quantity
 from bandwright.findings import maxima
 from bandwright.findings.case import CHOICE, Case
 from bandwright.findings.level import reaches_pass_band
@@ -53,6 +53,7 @@ def sample_rate_not_positive(case: Case) -> Iterator[Hit]:
     "error",
     "The {kind} edge {edge} is below 0 Hz, and the bands of a filter lie between 0 Hz and Nyquist; write it"
     " without the sign, or remove it.",
+    remedies=(edges.without_sign,),
 )
 def below_zero(case: Case) -> Iterator[Hit]:
     """A negative edge."""
@@ -90,21 +91,27 @@ def absurd_millihertz(case: Case) -> Iterator[Hit]:
         yield Hit(
             "edge/absurd-millihertz", Place(("sample_rate",)), facts, "rate", ((Place(path), "this edge"),)
         )
+    for path, quantity in _millihertz_edges(case, rate_hz):
+        yield Hit(
+            "edge/absurd-millihertz",
+            Place(path),
+            (
+                ("edge", quantities.show_quantity(quantity)),
+                ("share", quantities.show_number(quantity.number * 1e-3 / rate_hz, 2)),
+                ("rate", rate.written),
+                ("meant", _in_megahertz(filter, path)),
+            ),
+            "",
+            ((Place(("sample_rate",)), "the sample rate"),),
+        )
+
+
+def _millihertz_edges(case: Case, rate_hz: float) -> Iterator[tuple[Path, Quantity]]:
+    """The edges in mHz that would lie below Nyquist in MHz."""
     for path, _ in _edges(case):
-        quantity = filter.quantity(*path)
+        quantity = case.filter.quantity(*path)
         if quantity is not None and quantity.unit == "mHz" and 0 < quantity.number * 1e6 <= rate_hz / 2:
-            yield Hit(
-                "edge/absurd-millihertz",
-                Place(path),
-                (
-                    ("edge", quantities.show_quantity(quantity)),
-                    ("share", quantities.show_number(quantity.number * 1e-3 / rate_hz, 2)),
-                    ("rate", rate.written),
-                    ("meant", _in_megahertz(filter, path)),
-                ),
-                "",
-                ((Place(("sample_rate",)), "the sample rate"),),
-            )
+            yield path, quantity
 
 
 def _millihertz_rate(case: Case) -> Path | None:
@@ -141,7 +148,7 @@ def _in_megahertz(filter: Filter, path: Path) -> str:
         "all": "All edges of this filter, from {edge} upwards, are above Nyquist, {nyquist}; check the"
         " sample rate {rate}.",
     },
-    remedies=(edges.divided_by_two_pi, edges.in_other_convention, edges.larger_rate),
+    remedies=(edges.divided_by_two_pi, edges.in_other_convention, edges.larger_rate, edges.own_rate),
     needs=("sample_rate",),
 )
 def beyond_nyquist(case: Case) -> Iterator[Hit]:
@@ -313,8 +320,10 @@ def bands_overlap(case: Case) -> Iterator[Hit]:
 def too_close(case: Case) -> Iterator[Hit]:
     """Two edges, or one and 0 Hz or Nyquist, that double precision can't part well enough."""
     found = [(path, w) for path, w in _edges(case) if w is not None]
-    close = bands.too_close(case.bands)
+    close, rate_hz = bands.too_close(case.bands), case.forecast.sample_rate_hz
     if close is None or not all(0.0 <= w <= NYQUIST for _, w in found):
+        return
+    if rate_hz is not None and any(True for _ in _millihertz_edges(case, rate_hz)):
         return
     paths = {w: path for path, w in found}
     written = {0.0: "0 Hz", math.pi: "Nyquist"}

@@ -10,7 +10,8 @@ from bandwright.bandfile.values import Filter, Path, Place, Quantity, Setting
 from bandwright.findings.case import Case
 from bandwright.findings.rules import Find, Hit, finding
 from bandwright.forecast.bands import LEAST_HEIGHT_DB, Band
-from bandwright.remedies import levels
+from bandwright.forecast.forecast import Forecast
+from bandwright.remedies import levels, words
 
 LEAST_ATTENUATION_DB = 0.5
 """A stop band that takes away less than this is none: half a dB is a gain of 0.94."""
@@ -232,19 +233,27 @@ def stop_above_pass(case: Case) -> Iterator[Hit]:
         yield Hit("level/stop-above-pass", place, facts, form, related)
 
 
+def noise_floor(forecast: Forecast) -> float | None:
+    """How far rounding noise lies below a full-scale sine, dB; None where data are in floating point."""
+    arithmetic = forecast.arithmetic
+    if arithmetic is None or arithmetic.data.number_format != "fixed":
+        return None
+    return QUIETER_PER_BIT_DB * arithmetic.data.bits + SINE_DB
+
+
 @finding(
     "level/deeper-than-arithmetic",
     "warning",
     "A stop band {attenuation} down lies below the rounding noise of `{data}` data, {floor} below a"
     " full-scale sine; ask for less, or store data in a longer word.",
+    remedies=(levels.down_to(lambda forecast: noise_floor(forecast) or 0.0), words.longer_data),
     needs=("arithmetic",),
 )
 def deeper_than_arithmetic(case: Case) -> Iterator[Hit]:
     """A stop band that no signal in the filter's fixed-point format can show."""
-    arithmetic = case.forecast.arithmetic
-    if arithmetic is None or arithmetic.data.number_format != "fixed":
+    arithmetic, floor = case.forecast.arithmetic, noise_floor(case.forecast)
+    if arithmetic is None or floor is None:
         return
-    floor = QUIETER_PER_BIT_DB * arithmetic.data.bits + SINE_DB
     depths = [
         (-band.most, band.index)
         for band in case.bands

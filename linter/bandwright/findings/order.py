@@ -197,6 +197,24 @@ def pinned_too_low(case: Case) -> Iterator[Hit]:
 
 
 @finding(
+    "order/pinned-odd",
+    "error",
+    "The order is pinned to {order}, and a {kind} filter of an IIR family has twice its prototype's order,"
+    " an even number; write {even}.",
+    remedies=(relaxations.even_order,),
+    needs=CHOICE,
+)
+def pinned_odd(case: Case) -> Iterator[Hit]:
+    """An odd order is pinned for a band-pass or band-stop, and would be high enough."""
+    order, select = case.filter.count("order"), case.forecast.selectivity
+    if order is None or order % 2 == 0 or select is None or not select.doubles:
+        return
+    if any(one.least_order is not None and one.least_order <= order for one in maxima.built(case)):
+        facts = (("order", order), ("kind", select.kind), ("even", order + 1))
+        yield Hit("order/pinned-odd", Place(("order",)), facts)
+
+
+@finding(
     "order/pinned-without-iir",
     "warning",
     "`order` pins IIR filters only, and {cause} leaves only FIR filters, so it asks for nothing; remove it.",
@@ -228,7 +246,8 @@ def pinned_above_least(case: Case) -> Iterator[Hit]:
     order, chosen = case.filter.count("order"), case.chosen()
     if order is None or chosen is None or chosen.least_order is None or not maxima.keeps_all(case):
         return
-    if order <= chosen.least_order + (_step(case) if chosen.tie else 0):
+    odd = _step(case) == 2 and order % 2 == 1
+    if odd or order <= chosen.least_order + (_step(case) if chosen.tie else 0):
         return
     facts = (("order", order), ("family", title(chosen.family)), ("least", chosen.least_order))
     yield Hit("order/pinned-above-least", Place(("order",)), facts)

@@ -146,7 +146,10 @@ class Forecast:
         if design is None or one.order is None:
             return None
         predict = bit_theory.cascade_bits if row.stores == "sections" else bit_theory.direct_form_bits
-        predicted = predict(design, self.mask, form)
+        try:
+            predicted = predict(design, self.mask, form)
+        except ArithmeticError:
+            return None  # as many bits as would be needed can't be told in double precision
         if predicted is None:
             return None
         question = CoefficientBits(self.mask, one.family, one.order, _asked_as(row), form)

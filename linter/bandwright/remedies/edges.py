@@ -14,6 +14,9 @@ from bandwright.remedies.change import Change
 ROUND_WITHIN = 5e-4
 """How near a frequency must come to one of two digits to count as round, relatively."""
 
+ROOM = 0.9
+"""Edges up to this share of Nyquist leave the bilinear transform room."""
+
 
 def angular(filter: Filter, path: Path) -> Quantity | None:
     """The edge divided by 2 pi, where that makes a round frequency below Nyquist out of an odd one above.
@@ -84,6 +87,27 @@ def larger_rate(forecast: Forecast, place: Place) -> Iterator[Change]:
         yield Change(
             "changes-requirement", f"Write `{text}` for the sample rate", ((("sample_rate",), text),)
         )
+
+
+def own_rate(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Give the filter its own sample rate: the present one times a power of two that leaves edges room."""
+    rate = forecast.filter.quantity("sample_rate")
+    edges = [w for band in bands.bands(forecast.filter) for w in (band.low, band.high) if w is not None]
+    times = 1
+    while rate is not None and max(edges, default=0.0) > ROOM * math.pi * times:
+        times *= 2
+    if rate is not None and times > 1 and place.path != ("sample_rate",):
+        text = quantities.show_quantity(Quantity(rate.number * times, rate.unit))
+        title = f"Give this filter a sample rate of {text}"
+        yield Change("changes-requirement", title, ((("sample_rate",), text),))
+
+
+def without_sign(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Write the edge without its minus sign."""
+    edge = forecast.filter.quantity(*place.path)
+    if edge is not None and edge.number < 0:
+        text = quantities.show_quantity(Quantity(-edge.number, edge.unit))
+        yield Change("changes-requirement", f"Write `{text}`", ((place.path, text),))
 
 
 def megahertz(forecast: Forecast, place: Place) -> Iterator[Change]:

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 
 from bandwright.bandfile import quantities
 from bandwright.bandfile.values import Place, Quantity
 from bandwright.forecast.forecast import Forecast
-from bandwright.remedies.change import Change
+from bandwright.remedies.change import Change, Remedy
 
 
 def without_sign(forecast: Forecast, place: Place) -> Iterator[Change]:
@@ -69,3 +69,15 @@ def as_decibels(forecast: Forecast, place: Place) -> Iterator[Change]:
     if texts:
         words = " and ".join(f"`{text}`" for _, text in texts)
         yield Change("changes-requirement", f"Write {words}", tuple(texts))
+
+
+def down_to(floor_db: Callable[[Forecast], float]) -> Remedy:
+    """Ask for no more attenuation than leads to a floor, dB below 0."""
+
+    def shallower(forecast: Forecast, place: Place) -> Iterator[Change]:
+        attenuation = place.path[-1] == "attenuation"
+        number = math.floor(floor_db(forecast)) * (1 if attenuation else -1)
+        text = quantities.show(number, "level", "dB")
+        yield Change("changes-requirement", f"Ask for {text}", ((place.path, text),))
+
+    return shallower

@@ -118,6 +118,15 @@ def release_order(forecast: Forecast, place: Place) -> Iterator[Change]:
     )
 
 
+def even_order(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Pin an even order: the next higher or lower one, or the least."""
+    order = forecast.filter.count("order")
+    if order is not None:
+        for even in (order + 1, order - 1):
+            yield Change("keeps-requirement", f"Pin order {even}", ((("order",), str(even)),))
+    yield from release_order(forecast, place)
+
+
 def drop_order(forecast: Forecast, place: Place) -> Iterator[Change]:
     """Remove an order that pins nothing."""
     yield Change("keeps-requirement", "Remove the order", ((("order",), None),))

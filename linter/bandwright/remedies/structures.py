@@ -16,11 +16,13 @@ def second_order_sections(forecast: Forecast, place: Place) -> Iterator[Change]:
     chosen = forecast.chosen
     if chosen is None or chosen.kind != "iir" or chosen.structure == "cascade":
         return
-    yield Change(
-        "keeps-requirement",
-        "Store as second-order sections: {after[bits]} coefficient bits instead of {before[bits]}",
-        ((("structure",), "cascade"),),
-    )
+    # The bits of the old structure may be beyond what can be told.
+    for instead in (" instead of {before[bits]}", ""):
+        yield Change(
+            "keeps-requirement",
+            f"Store as second-order sections: {{after[bits]}} coefficient bits{instead}",
+            ((("structure",), "cascade"),),
+        )
 
 
 def suitable_structure(forecast: Forecast, place: Place) -> Iterator[Change]:

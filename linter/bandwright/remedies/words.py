@@ -52,3 +52,14 @@ def _longer(forecast: Forecast, bits: float) -> Iterator[tuple[str, Path]]:
             yield name, path
             return
         name = LONGER.get(name)
+
+
+def longer_data(forecast: Forecast, place: Place) -> Iterator[Change]:
+    """Store data in the next longer format, and coefficients too where one name says both."""
+    arithmetic = forecast.arithmetic
+    longer = LONGER.get(arithmetic.data.name) if arithmetic is not None else None
+    named = forecast.filter.text("arithmetic") is not None
+    if longer is not None:
+        path: Path = ("arithmetic",) if named else ("arithmetic", "data")
+        what = "coefficients and data" if named else "data"
+        yield Change("keeps-requirement", f"Store {what} as `{longer}`", ((path, longer),))

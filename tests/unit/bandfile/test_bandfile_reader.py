@@ -114,7 +114,7 @@ def test_flow_and_block_style_say_the_same() -> None:
         ),
         (
             "    bands",
-            "    family: [bessel, eliptic]\n    bands",
+            "    family: [butterworth, eliptic]\n    bands",
             "key/unknown-name",
             "eliptic",
             {"nearest": "elliptic"},
@@ -222,7 +222,7 @@ def test_slips(old: str, new: str, id: str, at: str, facts: dict[str, str]) -> N
         ("      - stop", "        stop", [("bands", 0)]),
         ("    bands", "    at_mots: {order: 40}\n    bands", [("at_most",)]),
         ("    bands", "    at_most: 40\n    bands", [("at_most",)]),
-        ("    bands", "    family: [bessel, eliptic]\n    bands", [("family",)]),
+        ("    bands", "    family: [butterworth, eliptic]\n    bands", [("family",)]),
         ("    bands", "    phase: linear\n    phase: any\n    bands", [("phase",)]),
     ],
 )

@@ -5,19 +5,21 @@ from __future__ import annotations
 import asyncio
 import random
 import re
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
+from typing import NoReturn
 
 import pytest
 
 from bandwright import limits
-from bandwright.analysis.analyse import Memo, analyse
+from bandwright.analysis.analyse import Memo, analyse, analyse_filter
 from bandwright.analysis.present import present
-from bandwright.analysis.types import Finding
+from bandwright.analysis.types import Analysis, Finding
 from bandwright.bandfile.reader import read
+from bandwright.bandfile.values import Filter
 from bandwright.faces.server import session as session_module
 from bandwright.faces.server.answers import Answers
 from bandwright.faces.server.session import OpenFile, Session
-from bandwright.forecast.questions import CoefficientBits, CoefficientBitsAnswer, Question
+from bandwright.forecast.questions import Answer, CoefficientBits, CoefficientBitsAnswer, Question
 from bandwright.theory.closed_form.types import Mask, MaskBand
 
 URI = "file:///crane/hoist.bands.yaml"
@@ -210,11 +212,34 @@ def test_waiting_for_a_file_ends_when_it_is_closed() -> None:
     asyncio.run(close_it())
 
 
-def test_a_defect_is_told_and_the_file_shown_without_findings(monkeypatch: pytest.MonkeyPatch) -> None:
-    def broken(*_: object) -> None:
-        raise ZeroDivisionError
+def broken(*_: object) -> NoReturn:
+    raise ZeroDivisionError
 
-    monkeypatch.setattr(session_module, "analyse_filter", broken)
+
+def test_a_defect_with_one_filter_hides_its_findings_only(monkeypatch: pytest.MonkeyPatch) -> None:
+    def broken_for_one(filter: Filter, answers: Mapping[Question, Answer], memo: Memo) -> Analysis:
+        return broken() if filter.name == "strain-slow" else analyse_filter(filter, answers, memo)
+
+    monkeypatch.setattr(session_module, "analyse_filter", broken_for_one)
+
+    async def open_it() -> None:
+        watcher = Watcher()
+        watcher.session.open(URI, 1, TEXT)
+        found = await watcher.session.findings(watcher.session.files[URI])
+        assert [type(error) for error in watcher.defects] == [ZeroDivisionError]
+        everything = fresh(TEXT, watcher.session.answers)
+        assert (
+            found == tuple(finding for finding in everything if finding.filter != "strain-slow") != everything
+        )
+        assert watcher.published == [(1, tuple(finding for finding in found if not finding.accepted))]
+
+    asyncio.run(open_it())
+
+
+def test_a_defect_with_the_file_is_told_and_the_file_shown_without_findings(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    monkeypatch.setattr(session_module, "read", broken)
 
     async def open_it() -> None:
         watcher = Watcher()

@@ -97,6 +97,15 @@ def test_poles_keep_all_digits_of_their_distance_from_the_axis(name: str) -> Non
             assert imaginary < 4e-15
 
 
+@pytest.mark.parametrize("name", FAMILIES)
+def test_poles_of_orders_that_hardly_discriminate(name: str) -> None:
+    for order, e, g in ((1, 0.05, 0.5), (2, 0.05, 0.5), (3, 1e-4, 2.0), (5, 0.3, 0.01)):
+        for pole in FAMILIES[name].prototype(order, e, math.log(g)).poles:
+            real, imaginary = reference.pole_error(name, order, 1 + mpf(e), mpf(g), pole)
+            assert real < 1e-14
+            assert imaginary < 4e-15
+
+
 @pytest.mark.parametrize("name", ["chebyshev_2", "elliptic"])
 @pytest.mark.parametrize("order", [1, 2, 5, 12, 31])
 def test_zeros_are_the_poles_of_the_characteristic_function(name: str, order: int) -> None:

@@ -10,7 +10,15 @@ from itertools import pairwise
 import pytest
 
 from bandwright import limits
-from bandwright.theory.closed_form import butterworth, chebyshev_1, chebyshev_2, elliptic, iir, response
+from bandwright.theory.closed_form import (
+    butterworth,
+    chebyshev_1,
+    chebyshev_2,
+    elliptic,
+    iir,
+    placement,
+    response,
+)
 from bandwright.theory.closed_form.selectivity import Selectivity, selectivity
 from bandwright.theory.closed_form.types import Mask, MaskBand
 from unit.theory import iir_reference as reference
@@ -217,6 +225,34 @@ def test_a_narrow_stop_band_takes_a_single_zero() -> None:
     assert beyond.order == 3
 
 
+@pytest.mark.parametrize(
+    ("name", "edges", "depths", "order"),
+    # Found by brute force (iir_search): the farther band lies where an odd order has left its ripple.
+    [
+        ("elliptic", (0.2019, 0.3087, 2.0556), (16.67, 34.42), 3),
+        ("chebyshev_2", (0.3747, 0.4883, 2.7317), (37.42, 51.79), 9),
+    ],
+)
+def test_an_odd_order_serves_a_far_stop_band_beyond_its_ripple(
+    name: str, edges: tuple[float, float, float], depths: tuple[float, float], order: int
+) -> None:
+    p, s, t = edges
+    mask = Mask(
+        (
+            MaskBand("pass", 0.0, p, -0.5, 0.0, True, 0),
+            MaskBand("stop", s, t, None, -depths[0], True, 1),
+            MaskBand("stop", t, pi, None, -depths[1], True, 2),
+        )
+    )
+    least = iir.least_order(FAMILIES[name], _selective(mask))
+    assert least is not None
+    assert least.order == order
+    assert order - 1 < least.unrounded <= order
+    assert placement.level_order(FAMILIES[name], _selective(mask)) > order
+    assert iir_search.margin(name, order, mask) > 0.0
+    assert iir_search.margin(name, order - 1, mask) < 0.0
+
+
 def test_two_ripples_of_a_band_stop_take_the_edge_that_serves_both() -> None:
     # The nearer pass band may ripple 3 dB, the farther one 0.01 dB only.
     mask = Mask(
@@ -354,6 +390,31 @@ def test_a_stop_band_counts_from_the_highest_gain_of_a_pass_band_that_begins_lat
         gains = [response.gain_db(design, 0.95 + 0.05 * i / 200) for i in range(201)]
         assert response.gain_db(design, 1.5) <= max(gains) - 40.0 + 1e-9
         assert max(gains) - min(gains) <= 3.0
+
+
+def test_a_stop_band_between_short_pass_bands_counts_from_the_highest_gain_in_them() -> None:
+    mask = Mask(
+        (
+            MaskBand("pass", 0.64, 0.65, -3.0, 0.0, True, 0),
+            MaskBand("stop", 0.7, 0.9, None, -40.0, True, 1),
+            MaskBand("pass", 0.96, 0.97, -3.0, 0.0, True, 2),
+        )
+    )
+    for family in FAMILIES.values():
+        select = _selective(mask)
+        least = iir.least_order(family, select)
+        assert least is not None
+        design = iir.reference_design(family, select, least.order)
+        places = [low + 0.01 * i / 100 for low in (0.64, 0.96) for i in range(101)]
+        gains = [response.gain_db(design, w) for w in places]
+        edge = max(response.gain_db(design, 0.7), response.gain_db(design, 0.9))
+        assert edge <= max(gains) - 40.0 + 1e-9
+        assert max(gains) - min(gains) <= 3.0
+        # g F^2 from the gains, at the stop edge and at the highest place of the pass bands.
+        in_stop, in_pass = (10.0 ** (-gain / 10.0) - 1.0 for gain in (edge, max(gains)))
+        spare = (in_stop - 1e4 * in_pass) / (1e4 - 1.0)
+        margin = iir.margin(family, select, least.prototype_order).log_ratio
+        assert spare == pytest.approx(math.exp(0.5 * margin), rel=1e-3)
 
 
 def test_orders_of_plain_masks_are_those_in_50_digits() -> None:

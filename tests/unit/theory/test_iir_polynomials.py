@@ -117,6 +117,15 @@ def test_a_single_real_pole_takes_a_single_real_zero() -> None:
         assert single[0].b2 == 0.0
 
 
+def test_a_pair_of_poles_leaves_a_single_zero_to_a_single_pole() -> None:
+    # The pair at 3.0 is nearest to the single zero at Nyquist.
+    poles = (Root(3.0, 0.1, pair=True), Root(0.0, 0.5, pair=False))
+    zeros = (Root(pi, 0.0, pair=False), Root(0.5, 0.0, pair=True))
+    first, last = polynomials.sections(Design(poles, zeros, 0.0))
+    assert (first.b1, first.b2, first.a2) == (1.0, 0.0, 0.0)
+    assert last.b1 == -2.0 * math.cos(0.5)
+
+
 def test_costs_leave_out_what_is_free() -> None:
     # (1 + 1/z)^2 / (1 - 0.5/z + 0.25/z^2) times a gain: 2 for the poles, 1 for the gain of a cascade.
     nyquist = Root(pi, 0.0, pair=False)

@@ -13,11 +13,11 @@ from bandwright.bandfile import reader
 from bandwright.bandfile.values import Document
 from bandwright.exact.answer import answer
 from bandwright.faces.command import terminal
-from bandwright.faces.command.arguments import Parser, add_paths, add_today
+from bandwright.faces.command.arguments import CAUTION, Parser, add_paths, add_today
 from bandwright.faces.command.checking import STDIN, Checker, decoded, sought, write
 from bandwright.faces.command.error import CommandError
 
-NOT_APPLIED, NOT_ALL_DONE = 1, 2
+SOME_REMEDIES, NOT_ALL_DONE = 1, 2
 """Exit statuses."""
 
 
@@ -28,10 +28,14 @@ def configure(parser: Parser) -> None:
         "--in-place", action="store_true", help="change the files (default: show the changes as a diff)"
     )
     add_today(parser)
+    parser.epilog = (
+        "Exit status: 0, nothing to change; 1, changes were shown, or with `--in-place` made, to be looked at;"
+        " 2, something could not be read or written. " + CAUTION
+    )
 
 
 def run(arguments: Namespace) -> int:
-    """Mend the files; 0: all is applied, or nothing to do; 1: changes are shown, 2: a file can't be had."""
+    """Mend the files; 0: nothing to change, 1: changes are shown or made, 2: a file can't be had."""
     if arguments.in_place and STDIN in arguments.paths:
         raise CommandError(
             "bandwright fix: standard input can't be changed in place; leave out `--in-place`."
@@ -66,7 +70,7 @@ def run(arguments: Namespace) -> int:
     terminal.say(f"{'1 remedy' if remedies == 1 else f'{remedies} remedies'} {done}")
     if problems:
         return NOT_ALL_DONE
-    return NOT_APPLIED if remedies and not arguments.in_place else 0
+    return SOME_REMEDIES if remedies else 0
 
 
 def _mended(document: Document, checker: Checker) -> tuple[str, list[str]]:

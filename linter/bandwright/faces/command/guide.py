@@ -6,14 +6,13 @@ from argparse import Namespace
 from collections.abc import Iterator
 from pathlib import Path
 
-import bandwright
 from bandwright.faces.command import terminal
 from bandwright.faces.command.arguments import Parser
 from bandwright.faces.command.error import CommandError
 from bandwright.faces.command.suggestion import suggestion
+from bandwright.faces.guide_pages import GUIDE
 from bandwright.findings.catalogue import RULES
 
-GUIDE = Path(bandwright.__file__).parent / "guide"
 FINDINGS = "findings/"
 
 

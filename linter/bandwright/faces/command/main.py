@@ -28,7 +28,7 @@ FAILED = 2
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command and return its exit status.
 
-    0: nothing to report; 1: findings, or remedies that are not applied; 2: the command could not run.
+    0: nothing to report; 1: findings, or changes by remedies to look at; 2: the command could not run.
     """
     terminal.prepare()
     try:

@@ -8,6 +8,9 @@ from collections.abc import Callable, Iterable
 from bandwright.exact.workers import Workers
 from bandwright.forecast.questions import Answer, Question
 
+GRACE_S = 0.5
+"""How long work goes on that nobody waits for: longer than the pause in typing after which files ask."""
+
 Waiting = asyncio.Future[None]
 
 
@@ -18,16 +21,19 @@ class Asking:
     """
 
     def __init__(self, answered: Callable[[Question, Answer], None]) -> None:
+        self.given_up: set[Question] = set()
+        """Questions that ended every worker; there will be no answer to them."""
         self._keep = answered
         self._workers: Workers | None = None
         self._waiting: dict[Waiting, tuple[Question, ...]] = {}
         self._urgent: set[Waiting] = set()
+        self._later: asyncio.TimerHandle | None = None
 
     async def any_of(self, questions: Iterable[Question], *, urgent: bool = False) -> None:
-        """Wait until one of the questions is answered, or given up because it ends every worker.
-
-        `urgent` questions are worked on before all others.
-        """
+        """Wait until one of the questions is answered or given up; `urgent` ones are worked on first."""
+        questions = [question for question in questions if question not in self.given_up]
+        if not questions:
+            return
         waiting: Waiting = asyncio.get_running_loop().create_future()
         self._waiting[waiting] = tuple(questions)
         if urgent:
@@ -38,25 +44,39 @@ class Asking:
         finally:
             del self._waiting[waiting]
             self._urgent.discard(waiting)
-            self._tell()
+            self._tell_later()
 
     def close(self) -> None:
         """End the workers."""
+        if self._later is not None:
+            self._later.cancel()
         if self._workers is not None:
             self._workers.close()
 
+    def _tell_later(self) -> None:
+        """Let the workers know soon, as whoever got an answer, or was edited, mostly asks again at once."""
+        if self._later is None:
+            self._later = asyncio.get_running_loop().call_later(GRACE_S, self._tell)
+
     def _tell(self) -> None:
         """Let the workers know what is wanted now."""
+        if self._later is not None:
+            self._later.cancel()
+            self._later = None
         in_order = sorted(self._waiting, key=lambda waiting: waiting not in self._urgent)
         wanted = [
             question for waiting in in_order if not waiting.done() for question in self._waiting[waiting]
         ]
         if self._workers is None:
-            self._workers = Workers(self._answered, self._settled)
+            self._workers = Workers(self._answered, self._give_up)
         self._workers.want(list(dict.fromkeys(wanted)))
 
     def _answered(self, question: Question, answer: Answer) -> None:
         self._keep(question, answer)
+        self._settled(question)
+
+    def _give_up(self, question: Question) -> None:
+        self.given_up.add(question)
         self._settled(question)
 
     def _settled(self, question: Question) -> None:

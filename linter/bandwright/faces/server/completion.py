@@ -14,10 +14,10 @@ from bandwright.bandfile.context import Context
 from bandwright.bandfile.grammar import Key
 from bandwright.bandfile.quantities import UNITS
 from bandwright.bandfile.values import Document, Span
+from bandwright.faces.guide_pages import what_is_asked
 from bandwright.faces.markdown import Part, render
 from bandwright.faces.server import snippets
 from bandwright.faces.server.client import Client
-from bandwright.faces.server.guide import what_is_asked
 from bandwright.faces.server.hovers import device, key
 from bandwright.faces.server.session import Session
 from bandwright.faces.server.tokens import block_at
@@ -94,15 +94,26 @@ def _keys(client: Client, place: Context) -> Iterator[Offered]:
             yield _snippet(one, place, dash)
     for row in sorted(rows, key=lambda row: not row.judged):
         name = str(row.path[-1])
-        text = name if place.has_colon else f"{dash}{name}: "
-        item = {
+        item: Item = {
             "label": name,
             "kind": types.CompletionItemKind.Property.value,
             "detail": row.example,
             "filterText": f"{dash}{name}",
-            "text": text,
+            "text": name if place.has_colon else f"{dash}{name}: ",
         }
+        if client.snippets and not place.has_colon and (inside := _inside(place, row)):
+            item["text"] = f"{dash}{name}:{inside}"
+            item |= {"insertTextFormat": _SNIPPET_FORMAT, "insertTextMode": _ADJUST_INDENT}
         yield item, key.parts(row), place.span
+
+
+def _inside(place: Context, row: Key) -> str:
+    """What a new mapping or list starts with, as a snippet; empty for other values."""
+    if row.kind == "list":
+        return " [$0]" if place.flow else "\n  - $0"
+    if row.kind == "mapping":
+        return "\n  $0" if place.where == "top" and not place.flow else " {$0}"
+    return ""
 
 
 def _snippet(one: snippets.Snippet, place: Context, dash: str = "") -> Offered:

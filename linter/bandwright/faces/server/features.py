@@ -9,14 +9,36 @@ from typing import Any
 from lsprotocol import types
 
 from bandwright.analysis.types import Finding
-from bandwright.faces.server import code_actions, completion, hover, text_sync
+from bandwright.faces.server import (
+    code_actions,
+    completion,
+    folding,
+    hover,
+    inlay_hints,
+    navigation,
+    outline,
+    rename,
+    selection_ranges,
+    text_sync,
+    workspace_symbols,
+)
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.diagnostics import Texts
+from bandwright.faces.server.refusal import Refusal
 from bandwright.faces.server.session import OpenFile, Session
 
 REQUESTS: dict[str, Callable[[Session, Client, Any], Awaitable[Any]]] = {
     types.TEXT_DOCUMENT_HOVER: hover.hover,
     types.TEXT_DOCUMENT_COMPLETION: completion.completion,
+    types.TEXT_DOCUMENT_INLAY_HINT: inlay_hints.inlay_hints,
+    types.TEXT_DOCUMENT_DOCUMENT_SYMBOL: outline.outline,
+    types.WORKSPACE_SYMBOL: workspace_symbols.workspace_symbols,
+    types.TEXT_DOCUMENT_FOLDING_RANGE: folding.folding,
+    types.TEXT_DOCUMENT_SELECTION_RANGE: selection_ranges.selection_ranges,
+    types.TEXT_DOCUMENT_DEFINITION: navigation.definition,
+    types.TEXT_DOCUMENT_REFERENCES: navigation.references,
+    types.TEXT_DOCUMENT_PREPARE_RENAME: rename.prepare,
+    types.TEXT_DOCUMENT_RENAME: rename.rename,
     types.TEXT_DOCUMENT_CODE_ACTION: code_actions.code_actions,
     types.CODE_ACTION_RESOLVE: code_actions.resolve,
 }
@@ -45,9 +67,15 @@ class Features:
         self._texts: dict[str, Texts] = {}
 
     async def answer(self, method: str, params: Any) -> Any:
-        """The result of a request."""
+        """The result of a request.
+
+        Raises:
+            Refusal: the user asked for something that can't be done.
+        """
         try:
             return await REQUESTS[method](self._session, self._client, params)
+        except Refusal:
+            raise
         except Exception as error:
             self._failed(method, error)
             return None

@@ -25,6 +25,9 @@ from pygls.protocol import LanguageServerProtocol
 
 Message = Mapping[str, Any]
 
+MOST_LOGGED = 100
+"""Different texts that the client's log is told; whatever goes on after so many says nothing new."""
+
 
 class Protocol(LanguageServerProtocol):
     """The protocol of pygls, with its own entry for messages, and strict about them.
@@ -97,11 +100,7 @@ class Protocol(LanguageServerProtocol):
             if self._shutdown:
                 raise JsonRpcInvalidRequest("the server is shutting down")
             if self._is_initialized == (method == types.INITIALIZE):
-                raise (
-                    JsonRpcInvalidRequest("already initialized")
-                    if self._is_initialized
-                    else (JsonRpcServerNotInitialized("the first request must be `initialize`"))
-                )
+                raise _out_of_turn(self._is_initialized)
             params = self._params(method, message)
             self._is_initialized = True
         except JsonRpcException as refusal:
@@ -132,16 +131,14 @@ class Protocol(LanguageServerProtocol):
         if method not in self.fm.builtin_features and method not in self.fm.features:
             raise JsonRpcMethodNotFound.of(method)
         try:
-            return self.structure(message).params
+            return self.params_of(message)
         except Exception as error:  # cattrs raises whatever the wrong kind of value provokes
             raise JsonRpcInvalidParams(f"the parameters of `{method}` can't be read") from error
 
-    def structure(self, message: Message) -> Any:
-        """The message as the class of the protocol that describes it."""
+    def params_of(self, message: Message) -> Any:
+        """The parameters of a message as the protocol's own types; plain where the method is none of it."""
         kind = self.get_message_type(message["method"])
-        if kind is None:
-            raise JsonRpcMethodNotFound.of(message["method"])
-        return self._converter.structure(message, kind)
+        return message.get("params") if kind is None else self._converter.structure(message, kind).params
 
     def _cancel(self, message: Message) -> None:
         params = message.get("params")
@@ -172,9 +169,15 @@ class Protocol(LanguageServerProtocol):
 
     def log_once(self, text: str) -> None:
         """Tell the client's log, the first time that this text comes up."""
-        if text not in self._logged:
+        if text not in self._logged and len(self._logged) < MOST_LOGGED:
             self._logged.add(text)
             self.tell(types.WINDOW_LOG_MESSAGE, {"type": types.MessageType.Error.value, "message": text})
+
+
+def _out_of_turn(is_initialized: bool) -> JsonRpcException:
+    if is_initialized:
+        return JsonRpcInvalidRequest("already initialized")
+    return JsonRpcServerNotInitialized("the first request must be `initialize`")
 
 
 def _is_id(value: object) -> bool:

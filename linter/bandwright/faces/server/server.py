@@ -16,6 +16,7 @@ from pygls.lsp.server import LanguageServer
 from bandwright.faces.server import parent
 from bandwright.faces.server.client import Client, client_of
 from bandwright.faces.server.protocol import Protocol
+from bandwright.faces.server.refusal import Refusal
 
 if TYPE_CHECKING:
     from bandwright.faces.server.features import Features
@@ -24,6 +25,15 @@ REQUESTS: dict[str, Any] = {
     types.TEXT_DOCUMENT_HOVER: None,
     # After these a key, a value, a unit or the second half of a finding's id begins.
     types.TEXT_DOCUMENT_COMPLETION: types.CompletionOptions(trigger_characters=[" ", "{", "[", ",", "/"]),
+    types.TEXT_DOCUMENT_INLAY_HINT: None,
+    types.TEXT_DOCUMENT_DOCUMENT_SYMBOL: None,
+    types.WORKSPACE_SYMBOL: None,
+    types.TEXT_DOCUMENT_FOLDING_RANGE: None,
+    types.TEXT_DOCUMENT_SELECTION_RANGE: None,
+    types.TEXT_DOCUMENT_DEFINITION: None,
+    types.TEXT_DOCUMENT_REFERENCES: None,
+    types.TEXT_DOCUMENT_PREPARE_RENAME: None,
+    types.TEXT_DOCUMENT_RENAME: None,
     types.TEXT_DOCUMENT_CODE_ACTION: types.CodeActionOptions(
         code_action_kinds=[types.CodeActionKind.QuickFix, "source.fixAll.bandwright"], resolve_provider=True
     ),
@@ -108,7 +118,7 @@ class Server(LanguageServer):
         """Do what takes long the first time, while the client reads the answer to `initialize`."""
         assert self.features
         for method, example in WARM_UP:
-            self.protocol.structure({"jsonrpc": "2.0", "method": method, "params": example})
+            self.protocol.params_of({"jsonrpc": "2.0", "method": method, "params": example})
         # What is loaded stays; going through it in search of garbage would hold up keystrokes.
         gc.freeze()
 
@@ -124,8 +134,9 @@ class Server(LanguageServer):
             self.failed("the event loop", error)
 
     def report_server_error(self, error: Exception, source: object) -> None:
-        """Log what pygls would pop up."""
-        self.failed("the protocol", error)
+        """Log what pygls would pop up, except what was answered to the user as a refusal."""
+        if not isinstance(error, Refusal):
+            self.failed("the protocol", error)
 
     async def _leave_with(self, editor: int | None) -> None:
         await parent.gone(editor)

@@ -231,21 +231,30 @@ class Session:
         to_do.sort(key=lambda each: each[0] in file.analyses)
         started = time.monotonic()
         for done, (block, filter) in enumerate(to_do, 1):
-            self.analysis(file, block, filter)
+            try:
+                self.analysis(file, block, filter)
+            except Exception as error:  # a defect with one filter must not hide the findings of the others
+                self._failed(f"analysis of {filter.name}", error)
             if time.monotonic() - started > SLICE_S and done < len(to_do):
                 if file.shown is None:
                     self._show(file, self._present(file, document))
                 await asyncio.sleep(0)
                 started = time.monotonic()
         findings = self._present(file, document)
-        file.last_good = {
-            filter.name: file.analyses[block] if document.blocks[block].whole else file.last_good[filter.name]
-            for block, filter in document.filters
-            if document.blocks[block].whole or filter.name in file.last_good
-        }
+        file.last_good = self._last_good(file, document)
         file.findings = findings
         file.analysed.set()
         self._show(file, findings)
+
+    def _last_good(self, file: OpenFile, document: Document) -> dict[str, Analysis]:
+        """Of each filter the newest analysis while it could be read as written."""
+        found: dict[str, Analysis] = {}
+        for block, filter in document.filters:
+            is_whole = document.blocks[block].whole
+            newest = file.analyses.get(block) if is_whole else file.last_good.get(filter.name)
+            if newest is not None:
+                found[filter.name] = newest
+        return found
 
     def _present(self, file: OpenFile, document: Document) -> tuple[Finding, ...]:
         """The findings of what is analysed by now; the very same ones where nothing has changed."""
@@ -284,4 +293,5 @@ class Session:
         """What findings wait for, in the order of the file, then what hovers would like to know."""
         of_findings = (question for one in file.analyses.values() for question, _ in one.open)
         every = dict.fromkeys((*of_findings, *file.wanted))
-        return [question for question in every if question not in self.answers.kept]
+        kept, given_up = self.answers.kept, self._asking.given_up
+        return [question for question in every if question not in kept and question not in given_up]

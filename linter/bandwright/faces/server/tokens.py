@@ -6,7 +6,7 @@ from bisect import bisect_right
 from dataclasses import dataclass
 from typing import Literal
 
-from bandwright.bandfile.blocks import in_document
+from bandwright.bandfile.blocks import SECTIONS, in_document
 from bandwright.bandfile.values import Block, Document, Filter, Path, Span
 
 
@@ -36,6 +36,19 @@ def token_at(document: Document, line: int, column: int) -> Token | None:
 def block_at(document: Document, line: int) -> int:
     """The index of the block that a line belongs to; 0, the top level, ahead of all others."""
     return bisect_right(document.blocks, line, lo=1, key=lambda block: block.first_line) - 1
+
+
+def sections(document: Document) -> list[Span]:
+    """`devices` and `filters`, each from its key to the end of its last block."""
+    top = document.blocks[0]
+    found = []
+    for name, kind in SECTIONS.items():
+        inside = [one for one in document.blocks if one.kind == kind and () in one.marks]
+        if inside and (marks := top.marks.get((name,))) is not None:
+            start = in_document(document, top, marks.key)
+            end = in_document(document, inside[-1], inside[-1].marks[()].all)
+            found.append(Span(*start[:2], *end[2:]))
+    return found
 
 
 def _in_block(document: Document, index: int, line: int, column: int) -> Token | None:

@@ -83,7 +83,7 @@ def direct_form_bits(design: Design, mask: Mask, number_format: NumberFormat) ->
 
     `fixed`: a1..an share the least power of two above them all; so do b0..bn, once the highest gain of
     the pass bands is scaled to 1. None where the design itself breaks the mask. Raises ValueError where a
-    zero lies off the unit circle.
+    zero lies off the unit circle, and ArithmeticError where figures leave the range of double precision.
     """
     survey = _survey(design, mask)
     gain = math.exp(design.log_gain - survey.peak)
@@ -115,7 +115,8 @@ def cascade_bits(design: Design, mask: Mask, number_format: NumberFormat) -> Pre
 
     `fixed`: the step is 2^(2-W), as a1 and b1 reach 2. Coefficients 0, +-1 and +-2 cost nothing, so zeros at
     z = +-1 don't either. Gains between the sections are not counted. None where the design itself breaks the
-    mask. Raises ValueError where a zero lies off the unit circle.
+    mask. Raises ValueError where a zero lies off the unit circle, and ArithmeticError where figures leave the
+    range of double precision.
     """
     survey = _survey(design, mask)
     poles = [(*section, *_steps((section.a1, section.a2), number_format, 1)) for section in survey.sections]
@@ -284,9 +285,8 @@ class _Response:
             slope += weight / off
             bend -= weight / (off * off)
         for pole, weight in self.poles:
-            away = v - pole
-            level -= weight * math.log(abs(away))
-            away = 1.0 / away
+            away = 1.0 / (v - pole)
+            level += weight * math.log(abs(away))
             slope -= weight * away.real
             bend += weight * (away * away).real
         return _Node(v, level, slope, bend)
@@ -501,6 +501,8 @@ def _prediction(
                 worst = max(worst, math.dist(change, other_change) / margin)
     if slack < -NO_MARGIN:
         return None
+    if not worst < math.inf:
+        raise OverflowError("more bits than can be told")
     real = math.log2(worst / math.sqrt(12.0)) + ODDS if worst else 0.0
     tight = slack <= NO_MARGIN
     return Prediction(

@@ -19,6 +19,9 @@ TIE = 1e-11
 NO_MARGIN = 1e-9
 """Nepers that a mask may be missed by: what `TIE` makes of an order at 200 dB."""
 
+FAR = 32
+"""With so many orders to go, they are not all looked at."""
+
 
 @dataclass(frozen=True, slots=True)
 class IirOrder:
@@ -161,12 +164,30 @@ def _searched(
             return None
         order = math.ceil(level * (1.0 - TIE))
         return order, level, abs(level - order) <= TIE * level, margin(family, selectivity, order).e
-    while (found := margin(family, selectivity, order)).log_ratio < -NO_MARGIN:
-        order += 1
-        if order > most:
-            return None
+    failed = order - 1
+    leaping = True
+    while True:
+        found = margin(family, selectivity, order)
+        if found.log_ratio < -NO_MARGIN:
+            if order >= most:
+                return None
+            failed = order
+            order = min(order + (_leap(selectivity, order, found.log_ratio) if leaping else 1), most)
+        elif order > failed + 1:
+            order, leaping = failed + 1, False
+        else:
+            break
     real = max(real, _unrounded(family, selectivity, order, found.log_ratio))
     return order, real, abs(found.log_ratio) <= NO_MARGIN, found.e
+
+
+def _leap(selectivity: Selectivity, order: int, log_ratio: float) -> int:
+    """How many orders on to look next: where many are still to go, a quarter of them at the pace so far."""
+    gained = max(math.log(one.discrimination) for one in selectivity.transitions) + log_ratio
+    if not gained > 0.0:
+        return 1
+    left = -log_ratio / gained * order
+    return 1 if left < FAR else round(min(left / 4.0, limits.MAX_IIR_ORDER))
 
 
 def _reaches_beyond_ripple(family: Family, selectivity: Selectivity, order: int) -> bool:

@@ -40,7 +40,13 @@ def _width(forecast: Forecast, path: Path) -> list[str]:
     gap = transition(forecast.filter, path)
     if gap is None or gap.width == 0.0:
         return []
-    return [f"The transition is {_frequency(forecast, gap)} wide{_ratio(gap)}."]
+    return [f"The transition is {width_in_words(forecast, gap)}."]
+
+
+def width_in_words(forecast: Forecast, gap: Transition) -> str:
+    """Width and ratio of a transition: "5 Hz wide, ratio 1.25"."""
+    ratio = f", ratio {quantities.show_number(gap.ratio)}" if math.isfinite(gap.ratio) else ""
+    return f"{_frequency(forecast, gap)} wide{ratio}"
 
 
 def _frequency(forecast: Forecast, gap: Transition) -> str:
@@ -48,7 +54,3 @@ def _frequency(forecast: Forecast, gap: Transition) -> str:
     if rate_hz is None:
         return f"{quantities.show_number(gap.width / math.pi)} pi"
     return quantities.show(gap.width / (2.0 * math.pi) * rate_hz, "frequency")
-
-
-def _ratio(gap: Transition) -> str:
-    return f", ratio {quantities.show_number(gap.ratio)}" if math.isfinite(gap.ratio) else ""

@@ -36,7 +36,7 @@ def parts(forecast: Forecast, name: str) -> list[Part]:
         has = arithmetic.coefficient_bits
         columns.append((f"`{arithmetic.coefficients.name}` has", "right", [str(has)] * len(needs)))
         columns.append(("enough", "left", [_enough(figure, has) for _, figure in needs]))
-    own = next(at for at, (one, _) in enumerate(needs) if one == name)
+    own = next((at for at, (one, _) in enumerate(needs) if one == name), None)
     kind = "The sign is counted. " if form == "fixed" else "Significant bits of a floating-point number. "
     return [*about, table(columns, own), kind + certainty(figure for _, figure in needs)]
 
