@@ -37,7 +37,7 @@ def rich() -> Iterator[Client]:
     yield from connected({"textDocument": SNIPPETS})
 
 
-@pytest.fixture(params=["utf-8", "utf-16", "utf-32"])
+@pytest.fixture(scope="module", params=["utf-8", "utf-16", "utf-32"])
 def encoded(request: pytest.FixtureRequest) -> Iterator[tuple[Client, str]]:
     encoding = str(request.param)
     for client in connected({"general": {"positionEncodings": [encoding]}}):

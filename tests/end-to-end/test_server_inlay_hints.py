@@ -40,7 +40,7 @@ filters:
 """
 
 
-@pytest.fixture(params=["utf-8", "utf-16", "utf-32"])
+@pytest.fixture(scope="module", params=["utf-8", "utf-16", "utf-32"])
 def encoded(request: pytest.FixtureRequest) -> Iterator[tuple[Client, str]]:
     encoding = str(request.param)
     client = Client()
@@ -50,7 +50,7 @@ def encoded(request: pytest.FixtureRequest) -> Iterator[tuple[Client, str]]:
     assert client.errors() == ""
 
 
-@pytest.fixture
+@pytest.fixture(scope="module")
 def client() -> Iterator[Client]:
     client = Client()
     client.initialize()

@@ -31,14 +31,14 @@ filters:
 REQUEST_FAILED = -32803
 
 
-@pytest.fixture(params=["utf-8", "utf-16", "utf-32"])
+@pytest.fixture(scope="module", params=["utf-8", "utf-16", "utf-32"])
 def encoded(request: pytest.FixtureRequest) -> Iterator[tuple[Client, str]]:
     encoding = str(request.param)
     for client in connected({"general": {"positionEncodings": [encoding]}}):
         yield client, encoding
 
 
-@pytest.fixture
+@pytest.fixture(scope="module")
 def client() -> Iterator[Client]:
     yield from connected({"textDocument": {"rename": {"prepareSupport": True}}})
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from itertools import pairwise
 from typing import Any
 
 import pytest
@@ -47,19 +48,19 @@ def connected(abilities: dict[str, object]) -> Iterator[Client]:
     assert not [message for message in client.received if message.get("method") == "window/logMessage"]
 
 
-@pytest.fixture(params=["utf-8", "utf-16", "utf-32"])
+@pytest.fixture(scope="module", params=["utf-8", "utf-16", "utf-32"])
 def encoded(request: pytest.FixtureRequest) -> Iterator[tuple[Client, str]]:
     encoding = str(request.param)
     for client in connected({**NESTED, "general": {"positionEncodings": [encoding]}}):
         yield client, encoding
 
 
-@pytest.fixture
+@pytest.fixture(scope="module")
 def plain() -> Iterator[Client]:
     yield from connected({})
 
 
-@pytest.fixture
+@pytest.fixture(scope="module")
 def nested() -> Iterator[Client]:
     yield from connected(NESTED)
 
@@ -161,7 +162,7 @@ def test_a_selection_grows_from_the_word_to_the_file(encoded: tuple[Client, str]
     assert words[:2] == ["25 Hz", "from: 25 Hz"]
     assert words[-1] == text
     assert words[-2].startswith("filters:")
-    assert all(inner in outer for inner, outer in zip(words, words[1:], strict=False))
+    assert all(inner in outer for inner, outer in pairwise(words))
     assert any(word.startswith("strain-slow:") for word in words)
 
 

@@ -155,7 +155,7 @@ def _path(one: Fault | Hit) -> Path:
 
 def _mend_title(mend: Mend) -> str:
     if mend.text is None:
-        return "Remove this entry"
+        return f"Remove one entry: {mend.reading}" if mend.reading else "Remove this entry"
     if not mend.text:
         return "Remove it"
     if "\n" in mend.text:

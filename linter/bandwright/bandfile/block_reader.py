@@ -242,8 +242,17 @@ class BlockReader:
         place = Place((*path, name), "key", span=entry.key.span)
         facts = (("key", name), ("where", self.container(path)))
         related = (Place((*path, name), "key", span=first.key.span),)
-        mend = Mend((*path, name), None, span=union(entry.key.span, entry.value.span))
-        self.fault("syntax/duplicate-key", place, facts, mends=(mend,), related=related)
+        mends = tuple(
+            Mend((*path, name), None, span=union(gone.key.span, gone.value.span), reading=f"keeps {kept}")
+            for gone, kept in ((entry, self.called(first)), (first, self.called(entry)))
+        )
+        self.fault("syntax/duplicate-key", place, facts, mends=mends, related=related)
+
+    def called(self, entry: Entry) -> str:
+        """An entry's value where it is short, else its line."""
+        written = self.written(entry.value)
+        line = entry.key.span.line + 1
+        return f"`{written}`" if isinstance(entry.value, Scalar) and written else f"the one of line {line}"
 
     def missing(self, path: Path, name: str, other: str | None = None) -> None:
         facts = [("key", name), ("where", self.container(path))]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from bandwright import limits
 from bandwright.theory.closed_form import placement, transforms
@@ -23,8 +24,7 @@ FAR = 32
 """With so many orders to go, they are not all looked at."""
 
 
-@dataclass(frozen=True, slots=True)
-class IirOrder:
+class IirOrder(NamedTuple):
     """The least order of one family for one mask."""
 
     order: int
