@@ -110,6 +110,21 @@ def test_the_linear_phase_filter_has_its_response(plots: dict[str, str]) -> None
     assert label.endswith(" taps")
 
 
+def test_a_response_that_keeps_to_another_place_of_a_floating_mask_is_left_out(
+    bandwright: Run, tmp_path: Path
+) -> None:
+    """Its stop band is counted from its highest gain, 2.7 dB, and the plot's from 0 dB."""
+    (tmp_path / "open.bands.yaml").write_text(
+        "format: bandwright/1\nfilters:\n  open:\n    family: equiripple\n    bands:\n"
+        "      - pass: {to: 0.3 pi, gain: {min: -3 dB}}\n      - stop: {from: 0.4 pi, attenuation: 20 dB}\n",
+        encoding="utf-8",
+    )
+    assert bandwright("forecast", "open.bands.yaml", "--plot", "open.svg").returncode == 0
+    svg = (tmp_path / "open.svg").read_text(encoding="utf-8")
+    assert "responses, equiripple." in svg
+    assert " taps<" not in svg
+
+
 def test_the_table_is_printed_too(bandwright: Run, tmp_path: Path) -> None:
     done = bandwright("forecast", str(DEMO), "slew-rate", "--plot", "slew.svg")
     assert (done.returncode, done.stderr) == (0, b"")

@@ -62,11 +62,21 @@ class Filter:
     settings: tuple[tuple[Path, Setting], ...]
     _index: Mapping[Path, Setting] = field(init=False, compare=False, repr=False, hash=False)
     _unknown: tuple[Path, ...] = field(init=False, compare=False, repr=False, hash=False)
+    _hash: int = field(init=False, compare=False, repr=False, hash=False)
+    """Computed once: an analysis is looked up at every keystroke."""
 
     def __post_init__(self) -> None:
         object.__setattr__(self, "_index", dict(self.settings))
         unknown = tuple(path for path, setting in self.settings if setting.value is UNKNOWN)
         object.__setattr__(self, "_unknown", unknown)
+        object.__setattr__(self, "_hash", hash((self.name, self.settings)))
+
+    def __hash__(self) -> int:
+        return self._hash
+
+    def __reduce__(self) -> tuple[type[Filter], tuple[object, ...]]:
+        # Hashes of text differ from process to process.
+        return Filter, (self.name, self.settings)
 
     def get(self, *path: str | int) -> Setting | None:
         """The setting at this path, or None where nothing is said."""

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from bandwright.drawings.areas import most_db
 from bandwright.drawings.axes import Scale
-from bandwright.drawings.labels import Flag, Side, flag_span, raise_flags, shortened, text_width
+from bandwright.drawings.labels import Flag, Side, raise_flags, shortened, text_width
 from bandwright.drawings.responses import Response
 from bandwright.drawings.svg import element, escaped, line
 from bandwright.forecast.forecast import Forecast
@@ -112,12 +112,11 @@ def flags(found: Sequence[Raised], lowest: float, bottom: float) -> Iterator[str
     for one in found:
         baseline = lowest - one.row * ROW
         yield line("edge", one.x, baseline - 0.9 * SIZE, one.x, bottom)
-        start, end = flag_span(Flag(one.x, 0.0, one.side), one.side, GAP)
         yield element(
             "text",
             escaped(one.text),
             class_="ink strong" if one.edge.sets else "ink",
-            x=start if one.side == "right" else end,
+            x=one.x + GAP if one.side == "right" else one.x - GAP,
             y=baseline,
             font_size=SIZE,
             text_anchor="start" if one.side == "right" else "end",

@@ -115,6 +115,19 @@ def test_a_curve_is_nowhere_far_from_its_polyline(name: str) -> None:
                     assert abs(true_y - line_y) <= 0.6 * steep
 
 
+@pytest.mark.parametrize("name", NAMES)
+def test_no_response_enters_a_forbidden_area(name: str) -> None:
+    """The reference designs meet their masks, so their curves do where the mask is drawn rightly."""
+    forecast = forecasts()[name]
+    assert forecast.mask is not None
+    for one in responses(forecast):
+        for area in areas.areas(forecast.mask):
+            inner = [w for w in one.knots if area.low < w < area.high]
+            for w in (area.low, area.high, *inner):
+                beyond = (one.gain_db(w) - area.level) * (1.0 if area.over else -1.0)
+                assert beyond <= 1e-6, (one.label, area, w)
+
+
 def test_the_candidates_that_the_keys_admit_are_drawn_and_one_more_beside_a_single_family() -> None:
     families = {name: [one.family for one in responses(forecasts()[name])] for name in DEMO_NAMES}
     assert families["strain-slow"] == ["elliptic", "chebyshev-1"]

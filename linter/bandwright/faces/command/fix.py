@@ -29,8 +29,8 @@ def configure(parser: Parser) -> None:
     )
     add_today(parser)
     parser.epilog = (
-        "Exit status: 0, nothing to change; 1, changes were shown, or with `--in-place` made, to be looked at;"
-        " 2, something could not be read or written. " + CAUTION
+        "Exit status: 0, nothing to change; 1, changes were shown, or with `--in-place` made: look at them; "
+        "2, something could not be read or written. " + CAUTION
     )
 
 

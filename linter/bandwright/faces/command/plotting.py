@@ -5,15 +5,15 @@ from __future__ import annotations
 import math
 from pathlib import Path
 
+from bandwright.drawings.areas import areas
 from bandwright.drawings.plot import plot
 from bandwright.drawings.responses import Response, of_coefficients
 from bandwright.faces.command.checking import write
 from bandwright.faces.command.error import CommandError
 from bandwright.forecast.forecast import Forecast
-from bandwright.theory.closed_form.types import MaskBand
 
 UNSEEN_DB = 1e-6
-"""By how much a pass window may be missed: what rounding makes of it."""
+"""By how much a curve may enter a forbidden area: what rounding makes of it."""
 
 
 def write_plot(forecast: Forecast, file: str) -> None:
@@ -28,7 +28,10 @@ def write_plot(forecast: Forecast, file: str) -> None:
 
 
 def _equiripple(forecast: Forecast) -> tuple[Response, ...]:
-    """The response of the equiripple filter, where the filter's keys admit it and its length is computed."""
+    """The response of the equiripple filter, where the filter's keys admit it and its length is computed.
+
+    None where it does not keep out of the areas that the plot hatches.
+    """
     mask, one = forecast.mask, forecast.candidate("equiripple")
     if mask is None or one is None or not one.allowed or one.taps is None or not one.taps.exact:
         return ()
@@ -41,22 +44,17 @@ def _equiripple(forecast: Forecast) -> tuple[Response, ...]:
     coefficients = designed.impulse_response()
     response = FirResponse(coefficients)
     passes = [band for band in mask.bands if band.kind == "pass"]
-    ranges = [response.range(band.low, band.high) for band in passes]
-    reached = [(_decibels(low), _decibels(high)) for low, high in ranges]
-    peak_db = max(high for _, high in reached) if all(band.relative for band in passes) else 0.0
-    # Windows that float apart do not fit the mask as it is drawn.
-    if not all(
-        _fits(band, low - peak_db, high - peak_db) for band, (low, high) in zip(passes, reached, strict=True)
-    ):
-        return ()
+    highest = max(response.range(band.low, band.high)[1] for band in passes)
+    peak_db = _decibels(highest) if all(band.relative for band in passes) else 0.0
+    # The drawn mask is one of those that a floating one stands for; the filter may keep to another one.
+    for area in areas(mask):
+        low, high = response.range(area.low, area.high)
+        farthest = max(-low, high) if area.over else low
+        beyond = (_decibels(farthest) - peak_db - area.level) * (1 if area.over else -1)
+        if beyond > UNSEEN_DB:
+            return ()
     chosen = one is forecast.chosen
     return (of_coefficients(one.family, coefficients.tolist(), peak_db, chosen=chosen),)
-
-
-def _fits(band: MaskBand, low_db: float, high_db: float) -> bool:
-    return (band.least is None or low_db >= band.least - UNSEEN_DB) and (
-        band.most is None or high_db <= band.most + UNSEEN_DB
-    )
 
 
 def _decibels(amplitude: float) -> float:

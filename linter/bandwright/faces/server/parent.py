@@ -8,19 +8,14 @@ import os
 LOOKED_FOR_EVERY_S = 1.0
 
 
-async def gone(process: int | None) -> None:
-    """Return when the process has ended; never where there is none to watch.
-
-    An editor in another container names a process that was never here, and only its input tells its end.
-    """
-    if process is None or not _is_alive(process):
-        await asyncio.Event().wait()
-        return
-    while _is_alive(process):
+async def gone(process: int) -> None:
+    """Return when the process has ended."""
+    while is_alive(process):
         await asyncio.sleep(LOOKED_FOR_EVERY_S)
 
 
-def _is_alive(process: int) -> bool:
+def is_alive(process: int) -> bool:
+    """Whether the process is there, as far as can be told here."""
     if os.name != "posix" or process <= 0:  # signal 0 asks a question on POSIX only
         return True
     try:

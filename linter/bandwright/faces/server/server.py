@@ -103,7 +103,10 @@ class Server(LanguageServer):
         def handle(params: types.InitializeParams) -> None:
             loop = asyncio.get_running_loop()
             self.client = client_of(params.capabilities, self.protocol.workspace.position_encoding)
-            self._watch = loop.create_task(self._leave_with(params.process_id))
+            editor = params.process_id
+            # An editor in another container names a process that was never here: only its input tells its end.
+            if editor is not None and parent.is_alive(editor):
+                self._watch = loop.create_task(self._leave_with(editor))
             loop.call_soon(self._warm_up)
 
         return handle
@@ -138,7 +141,7 @@ class Server(LanguageServer):
         if not isinstance(error, Refusal):
             self.failed("the protocol", error)
 
-    async def _leave_with(self, editor: int | None) -> None:
+    async def _leave_with(self, editor: int) -> None:
         await parent.gone(editor)
         self.client_left()
 

@@ -46,10 +46,10 @@ def results(
             "ruleId": finding.id,
             "ruleIndex": INDICES[finding.id],
             "level": LEVELS[finding.severity],
-            "message": {"text": finding.message},
+            "message": _message(finding.message),
             "locations": [_location(file, finding.span) | _logical(finding.filter)],
             "relatedLocations": [
-                {"id": number, **_location(file, place.span), "message": {"text": place.message}}
+                {"id": number, **_location(file, place.span), "message": _message(place.message)}
                 for number, place in enumerate(finding.related, 1)
             ],
             # An empty list says "not suppressed"; §3.27.23 has it on all results or on none.
@@ -64,11 +64,12 @@ def log(files: Iterable[str], found: Iterable[Json], problems: Iterable[str]) ->
     """The whole output. Only ASCII, so that no terminal and no pipe spoils it.
 
     Args:
-        files: those that were checked.
-        found: the results of all of them, in order.
+        files: those that were checked, in order.
+        found: the results of all of them.
         problems: a sentence for each file that could not be read.
     """
-    notices = [{"level": "error", "message": {"text": problem}} for problem in problems]
+    artifacts = [{"location": _file(file), "roles": ["analysisTarget"]} for file in dict.fromkeys(files)]
+    notices = [{"level": "error", "message": _message(problem)} for problem in problems]
     run = {
         "tool": {
             "driver": {
@@ -78,14 +79,12 @@ def log(files: Iterable[str], found: Iterable[Json], problems: Iterable[str]) ->
             }
         },
         "invocations": [{"executionSuccessful": not notices, "toolExecutionNotifications": notices}],
-        "originalUriBaseIds": {BASE: {"description": {"text": "The folder that the check ran in."}}},
+        "originalUriBaseIds": {BASE: {"description": _message("The folder that the check ran in.")}},
         "columnKind": "unicodeCodePoints",
-        "artifacts": [
-            {"location": _file(file), "roles": ["analysisTarget"]} for file in dict.fromkeys(files)
-        ],
+        "artifacts": artifacts,
         "results": list(found),
     }
-    return json.dumps({"$schema": SCHEMA, "version": "2.1.0", "runs": [run]}, indent=2)
+    return json.dumps({"version": "2.1.0", "$schema": SCHEMA, "runs": [run]}, indent=2)
 
 
 def _rule(rule: Rule) -> Json:
@@ -105,6 +104,11 @@ def _what(document: Document, finding: Finding) -> str:
     return sha256(
         "\n".join((finding.id, block.kind, block.name, place.block, *keys)).encode("utf-8", "surrogatepass")
     ).hexdigest()[:32]
+
+
+def _message(text: str) -> Json:
+    """A message; in one, braces stand for arguments, so a brace itself is doubled (§3.11.5)."""
+    return {"text": text.replace("{", "{{").replace("}", "}}")}
 
 
 def _location(file: str, span: Span) -> Json:
@@ -137,7 +141,7 @@ def _suppression(finding: Finding) -> Json:
 def _fix(file: str, offer: Offer) -> Json:
     change = {"artifactLocation": _file(file), "replacements": [_replacement(edit) for edit in offer.edits]}
     return {
-        "description": {"text": offer.title},
+        "description": _message(offer.title),
         "artifactChanges": [change],
         "properties": {"kind": offer.kind},
     }
