@@ -61,10 +61,15 @@ def client() -> Iterator[Client]:
 
 
 def hints(
-    client: Client, text: str, within: tuple[int, int] | None = None, encoding: str = "utf-16"
+    client: Client,
+    text: str,
+    within: tuple[int, int] | None = None,
+    encoding: str = "utf-16",
+    opened: bool = False,
 ) -> list[tuple[str, str]]:
     """Each hint with the part of its line that stands ahead of it."""
-    client.open(URI, text)
+    if not opened:
+        client.open(URI, text)
     start, end = within or (0, len(text))
     wanted = {"start": position(text, start, encoding), "end": position(text, end, encoding)}
     params = {"textDocument": {"uri": URI}, "range": wanted}
@@ -139,6 +144,23 @@ def test_a_mask_that_can_be_none_has_no_order(client: Client) -> None:
     assert ("- pass: {to: 20 Hz, ripple: 0.1 dB", "±0.05 dB, ±0.576 %") in found
 
 
-def test_a_closed_file_has_none(client: Client) -> None:
-    params = {"textDocument": {"uri": URI}, "range": {"start": position("", 0), "end": position("", 0)}}
+def test_a_file_that_is_not_open_has_none(client: Client) -> None:
+    start = {"line": 0, "character": 0}
+    params = {"textDocument": {"uri": "file:///other.bands.yaml"}, "range": {"start": start, "end": start}}
     assert client.request("textDocument/inlayHint", params) is None
+
+
+def test_an_estimate_that_is_computed_meanwhile_comes_again() -> None:
+    client = Client()
+    client.initialize({"workspace": {"inlayHint": {"refreshSupport": True}}})
+    text = TEXT[: TEXT.index("  strain")] + TEXT[TEXT.index("  envelope") :]
+    assert dict(hints(client, text))["envelope:"].startswith("equiripple, ~")
+    # A hover asks for the exact length.
+    place = {"textDocument": {"uri": URI}, "position": position(text, text.index("envelope"))}
+    assert client.request("textDocument/hover", place)
+    refresh = client.wait(method="workspace/inlayHint/refresh")
+    client.send(id=refresh["id"], result=None)
+    while "~" in (words := dict(hints(client, text, opened=True))["envelope:"]):
+        client.wait(method="workspace/inlayHint/refresh")
+    assert words.startswith("equiripple, ")
+    assert client.shut_down() == 0

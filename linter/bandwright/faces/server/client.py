@@ -33,6 +33,8 @@ class Client:
     """Completions may hold places to fill in."""
     nested_outline: bool = False
     """The outline may have bands inside their filters."""
+    refreshes: tuple[str, ...] = ()
+    """The requests by which it can be made to ask again for what it shows."""
 
 
 def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Client:
@@ -47,6 +49,10 @@ def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Clien
     documents = get_capability(capabilities, document, None) or []
     lazy = get_capability(capabilities, "text_document.code_action.resolve_support.properties", None) or []
     versioned = says("workspace.workspace_edit.document_changes")
+    refreshes = {
+        types.WORKSPACE_INLAY_HINT_REFRESH: "workspace.inlay_hint.refresh_support",
+        types.WORKSPACE_CODE_LENS_REFRESH: "workspace.code_lens.refresh_support",
+    }
     return Client(
         encoding=encoding_of(encoding),
         markdown=bool(formats) and formats[0] == types.MarkupKind.Markdown,
@@ -59,4 +65,5 @@ def client_of(capabilities: types.ClientCapabilities, encoding: object) -> Clien
         markdown_completion=bool(documents) and documents[0] == types.MarkupKind.Markdown,
         snippets=says("text_document.completion.completion_item.snippet_support"),
         nested_outline=says("text_document.document_symbol.hierarchical_document_symbol_support"),
+        refreshes=tuple(method for method, support in refreshes.items() if says(support)),
     )

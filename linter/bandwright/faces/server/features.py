@@ -11,6 +11,7 @@ from lsprotocol import types
 from bandwright.analysis.types import Finding
 from bandwright.faces.server import (
     code_actions,
+    code_lens,
     completion,
     folding,
     hover,
@@ -24,6 +25,7 @@ from bandwright.faces.server import (
 )
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.diagnostics import Texts
+from bandwright.faces.server.refresh import Refresh
 from bandwright.faces.server.refusal import Refusal
 from bandwright.faces.server.session import OpenFile, Session
 
@@ -39,6 +41,7 @@ REQUESTS: dict[str, Callable[[Session, Client, Any], Awaitable[Any]]] = {
     types.TEXT_DOCUMENT_REFERENCES: navigation.references,
     types.TEXT_DOCUMENT_PREPARE_RENAME: rename.prepare,
     types.TEXT_DOCUMENT_RENAME: rename.rename,
+    types.TEXT_DOCUMENT_CODE_LENS: code_lens.code_lens,
     types.TEXT_DOCUMENT_CODE_ACTION: code_actions.code_actions,
     types.CODE_ACTION_RESOLVE: code_actions.resolve,
 }
@@ -63,7 +66,8 @@ class Features:
         self._client = client
         self._send_text = send_text
         self._failed = failed
-        self._session = Session(client.encoding, self._publish, failed, today)
+        refresh = Refresh(client.refreshes, lambda request: send_text(json.dumps(request)))
+        self._session = Session(client.encoding, self._publish, failed, today, refresh.soon)
         self._texts: dict[str, Texts] = {}
 
     async def answer(self, method: str, params: Any) -> Any:

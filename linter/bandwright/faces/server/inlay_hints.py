@@ -37,17 +37,15 @@ async def inlay_hints(
     file = session.files.get(params.text_document.uri)
     if file is None:
         return None
-    await session.findings(file)
-    if session.files.get(file.uri) is not file:
-        return None
+    await session.findings(file)  # by then everything is analysed
     document, lines = session.read(file), session.lines(file)
     wanted = lines.span(params.range)
     found = []
-    for index, filter in document.filters:
-        block = document.blocks[index]
-        if block.first_line > wanted.end_line or _last_line(block) < wanted.line or not block.whole:
+    for index, _ in document.filters:
+        block, forecast = document.blocks[index], session.newest_forecast(file, index)
+        if forecast is None or not block.whole or not _is_within(block, wanted):
             continue
-        for hint in _hints(session.analysis(file, index, filter).forecast):
+        for hint in _hints(forecast):
             place = _place(document, block, hint.path)
             if place is not None and wanted[:2] <= place <= wanted[2:]:
                 found.append((place, hint))
@@ -62,8 +60,9 @@ async def inlay_hints(
     ]
 
 
-def _last_line(block: Block) -> int:
-    return block.first_line + block.marks[()].all.end_line
+def _is_within(block: Block, wanted: Span) -> bool:
+    last_line = block.first_line + block.marks[()].all.end_line
+    return block.first_line <= wanted.end_line and wanted.line <= last_line
 
 
 def _place(document: Document, block: Block, path: Path) -> tuple[int, int] | None:

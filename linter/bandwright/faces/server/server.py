@@ -34,6 +34,7 @@ REQUESTS: dict[str, Any] = {
     types.TEXT_DOCUMENT_REFERENCES: None,
     types.TEXT_DOCUMENT_PREPARE_RENAME: None,
     types.TEXT_DOCUMENT_RENAME: None,
+    types.TEXT_DOCUMENT_CODE_LENS: None,
     types.TEXT_DOCUMENT_CODE_ACTION: types.CodeActionOptions(
         code_action_kinds=[types.CodeActionKind.QuickFix, "source.fixAll.bandwright"], resolve_provider=True
     ),
@@ -104,7 +105,7 @@ class Server(LanguageServer):
             loop = asyncio.get_running_loop()
             self.client = client_of(params.capabilities, self.protocol.workspace.position_encoding)
             editor = params.process_id
-            # An editor in another container names a process that was never here: only its input tells its end.
+            # An editor in another container names a process that was never here; its input tells its end.
             if editor is not None and parent.is_alive(editor):
                 self._watch = loop.create_task(self._leave_with(editor))
             loop.call_soon(self._warm_up)

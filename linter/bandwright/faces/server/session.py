@@ -21,6 +21,7 @@ from bandwright.bandfile.values import Document, Filter
 from bandwright.faces.server.answers import Answers, Lookups
 from bandwright.faces.server.asking import Asking
 from bandwright.faces.server.positions import Encoding, LineIndex
+from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.questions import Answer, Question
 
 SLICE_S = 0.005
@@ -84,14 +85,19 @@ class Session:
         publish: Callable[[OpenFile, tuple[Finding, ...]], None],
         failed: Callable[[str, Exception], None],
         today: Callable[[], str],
+        answered: Callable[[], None] = lambda: None,
     ) -> None:
-        """`publish` gets the problems of a file whenever they change, `failed` every defect."""
+        """`publish` gets the problems of a file whenever they change, `failed` every defect.
+
+        `answered` is told of every new answer, as figures that are on show may have been estimates.
+        """
         self.files: dict[str, OpenFile] = {}
         self.answers = Answers()
         self.memo = Memo(limits.MAX_RECENT_ANALYSES)
         self._encoding = encoding
         self._asking = Asking(self._keep)
         self._publish = publish
+        self._new_answer = answered
         self._failed = failed
         self.today = today
         self._last_edit_s = 0.0
@@ -160,6 +166,16 @@ class Session:
             file.analyses[block] = analyse_filter(filter, Lookups(self.answers.kept), self.memo)
         return file.analyses[block]
 
+    def newest_forecast(self, file: OpenFile, block: int) -> Forecast | None:
+        """The forecast of a filter that was analysed, with the lengths that were computed since."""
+        known = file.analyses.get(block)
+        if known is None:
+            return None
+        questions = {one.taps.question for one in known.forecast.candidates if one.taps is not None}
+        if questions.isdisjoint(self.answers.kept):
+            return known.forecast
+        return Forecast(known.filter, self.answers.kept)
+
     def _is_open(self, file: OpenFile, block: int) -> bool:
         """Whether a filter is not analysed yet, or a question that its analysis left open is answered now."""
         known = file.analyses.get(block)
@@ -190,6 +206,7 @@ class Session:
 
     def _keep(self, question: Question, answer: Answer) -> None:
         self.answers.add(question, answer, self._in_use)
+        self._new_answer()
 
     def _in_use(self) -> set[Question]:
         return {
