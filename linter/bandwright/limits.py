@@ -21,9 +21,6 @@ MAX_NAMES_COMPARED = 256
 MAX_IIR_ORDER = 512
 """Orders beyond this are reported as "more than"; no filter of the trade comes near."""
 
-MAX_FIR_TAPS = 20_000
-"""Lengths beyond this are reported as an estimate only."""
-
 MAX_EXACT_TAPS = 2_000
 """The longest FIR filter that the exchange is asked to design."""
 
@@ -38,6 +35,9 @@ MAX_UNDECIDED_LENGTHS = 4
 
 MAX_SEARCHED_WORD_BITS = 160
 """The longest coefficient word that the exact search tries."""
+
+MAX_COMPARED_GAINS = 1_000
+"""Places of the pass bands whose gains a prediction of coefficient bits compares with one another."""
 
 MAX_ANALYSES_KEPT = 16_384
 """Analyses kept by the value of their filter; more than the filters of the largest band file."""

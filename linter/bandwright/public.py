@@ -7,12 +7,12 @@ import time
 from bandwright.analysis.analyse import Memo
 from bandwright.analysis.present import present
 from bandwright.analysis.settle import settle
+from bandwright.analysis.settle_forecast import settle_forecast
 from bandwright.analysis.types import Finding
 from bandwright.bandfile.reader import read
 from bandwright.exact.answer import answer
 from bandwright.forecast.forecast import Forecast
-from bandwright.forecast.questions import Answer, Question
-from bandwright.forecast.rows import Row, questions, rows
+from bandwright.forecast.rows import Row, rows
 
 
 def check(text: str, *, today: str | None = None) -> tuple[Finding, ...]:
@@ -34,16 +34,4 @@ def forecast(text: str, name: str) -> tuple[Row, ...]:
         KeyError: the band file has no filter of this name.
     """
     filters = {filter.name: filter for _, filter in read(text).filters}
-    return settled_rows(Forecast(filters[name], {}))
-
-
-def settled_rows(forecast: Forecast) -> tuple[Row, ...]:
-    """The rows of a forecast after every question that their figures leave open has been answered."""
-    answers: dict[Question, Answer] = dict(forecast.answers)
-    while True:
-        table = rows(Forecast(forecast.filter, answers))
-        asked = list(questions(table))
-        if not asked:
-            return table
-        for question in asked:
-            answers[question] = answer(question)
+    return rows(settle_forecast(Forecast(filters[name], {}), {}, answer))

@@ -14,6 +14,17 @@ from editors.neovim import Neovim, set_up
 from editors.waiting import until
 
 
+@pytest.fixture
+def with_more(request: pytest.FixtureRequest, project: Path, environment: dict[str, str]) -> Iterator[Neovim]:
+    """Neovim 0.11 with hints, lenses and completion, and a file without findings."""
+    assert NEOVIM_NEW.is_file(), "Neovim 0.11 is missing: run `python3 tests/editors/install.py`"
+    lines = set_up("0.11") + set_up("0.11 with")
+    editor = Neovim(NEOVIM_NEW, lines, project / "hoist.bands.yaml", environment)
+    yield editor
+    editor.picture(request.node.name)
+    editor.close()
+
+
 @pytest.fixture(params=["0.7", "0.11"])
 def neovim(
     request: pytest.FixtureRequest, project: Path, environment: dict[str, str], trouble: Trouble
@@ -58,3 +69,30 @@ def test_a_remedy_clears_its_finding(neovim: Neovim, trouble: Trouble) -> None:
     neovim.keys("gra")
     until("the remedy's edit", lambda: neovim.text() != before)
     until("the finding's end", lambda: trouble.message not in messages())
+
+
+def row(neovim: Neovim, start: str) -> str:
+    """The first row of the screen whose text starts so."""
+    return next((row for row in neovim.screen().splitlines() if row.strip().startswith(start)), "")
+
+
+def test_hints_and_lenses_show_the_figures_of_each_filter(with_more: Neovim) -> None:
+    until("the hint beside a family", lambda: "elliptic order" in row(with_more, "family: elliptic"))
+    assert "Hz wide, ratio " in row(with_more, "- stop: {from: 25.6 Hz")
+    assert "4 kHz, q31" in row(with_more, "device: hoist-node")
+    assert "±0.05 dB, ±0.576 %" in row(with_more, "- pass: {to: 20 Hz, ripple: 0.1 dB")
+    lens = until("the lens above a filter", lambda: row(with_more, "elliptic order"))
+    assert " taps" in lens
+
+
+def test_completion_comes_while_typing_and_its_entry_is_taken(with_more: Neovim) -> None:
+    until("the server", lambda: row(with_more, "family: elliptic").count("order"))
+    with_more.keys("Go    transitions: ")
+    until("the list", lambda: "unbounded" in with_more.screen())
+    with_more.picture("completion")
+    with_more.keys("unb")
+    with_more.keys("<C-n><C-y><CR>at_most: {delay: 25 ")
+    until("the units", lambda: "samples" in with_more.screen())
+    with_more.keys("<C-n><C-y>}<Esc>")
+    lines = until("both lines", lambda: with_more.text().splitlines()[-2:])
+    assert lines == ["    transitions: unbounded", "    at_most: {delay: 25 ms}"]

@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 from argparse import Namespace
-from collections.abc import Callable, Iterator
 
+from bandwright.analysis.settle_forecast import every_question, settle_forecast
 from bandwright.bandfile import reader
 from bandwright.bandfile.values import Document, Filter
 from bandwright.exact.answer import answer
@@ -14,11 +14,7 @@ from bandwright.faces.command.arguments import Parser, one_of
 from bandwright.faces.command.checking import STDIN, Checker, decoded
 from bandwright.faces.command.error import CommandError
 from bandwright.faces.command.suggestion import suggestion
-from bandwright.forecast import rows
 from bandwright.forecast.forecast import Forecast
-from bandwright.forecast.questions import Question
-
-Questions = Callable[[Forecast], Iterator[Question]]
 
 
 def configure(parser: Parser) -> None:
@@ -61,14 +57,14 @@ def run(arguments: Namespace) -> int:
         names = ", ".join(filter.name for _, filter in chosen)
         raise CommandError(f"{arguments.file}: a plot shows one filter; name one of {names}.")
     # All figures of all structures are in the JSON; the text shows those of the filter's own structure.
-    questions = forecast_table.questions if arguments.form == "text" else _all_questions
+    questions = forecast_table.questions if arguments.form == "text" else every_question
     checker = Checker()
     forecasts = []
     for line, filter in chosen:
         checker.progress.show(filter.name)
         forecast = Forecast(filter, checker.answers)
         if arguments.certainty == "computed":
-            forecast = _settled(forecast, questions, checker)
+            forecast = settle_forecast(forecast, checker.answers, answer, questions)
         forecasts.append((line, forecast))
     checker.progress.clear()
     if arguments.plot is not None:
@@ -101,15 +97,3 @@ def _chosen(document: Document, name: str | None, file: str) -> list[tuple[int, 
         names = [filter.name for _, filter in filters]
         raise CommandError(f"{file}: there is no filter `{name}`; {suggestion(name, names)}")
     return found
-
-
-def _all_questions(forecast: Forecast) -> Iterator[Question]:
-    return rows.questions(rows.rows(forecast))
-
-
-def _settled(forecast: Forecast, questions: Questions, checker: Checker) -> Forecast:
-    """The forecast after every question that its figures leave open has been answered."""
-    while asked := [question for question in questions(forecast) if question not in checker.answers]:
-        checker.answers.update((question, answer(question)) for question in asked)
-        forecast = Forecast(forecast.filter, checker.answers)
-    return forecast

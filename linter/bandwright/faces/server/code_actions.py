@@ -13,7 +13,7 @@ from lsprotocol import types
 
 from bandwright.analysis.offer import offer
 from bandwright.analysis.types import Finding, Offer
-from bandwright.bandfile.values import Span, TextEdit
+from bandwright.bandfile.values import Document, Span, TextEdit
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.diagnostics import diagnostic
 from bandwright.faces.server.fix_all import safe_edits
@@ -68,7 +68,8 @@ def _asked(only: Iterable[str] | None, kind: str) -> bool:
 async def _quick_fixes(
     session: Session, client: Client, file: OpenFile, params: types.CodeActionParams
 ) -> list[Action]:
-    findings = await session.findings(file)
+    """None where the file is edited before they are found: they would be of a text that is gone."""
+    findings, document = await session.findings(file), session.read(file)
     wanted = session.lines(file).span(params.range)
     automatic = params.context.trigger_kind == types.CodeActionTriggerKind.Automatic
     actions: list[Action] = []
@@ -76,7 +77,10 @@ async def _quick_fixes(
     for finding in findings:
         if finding.accepted or not _touch(finding.span, wanted):
             continue
-        for each in await _offers(session, file, finding, wait=not automatic):
+        offers = await _offers(session, document, finding, wait=not automatic)
+        if file.document is not document:
+            return []
+        for each in offers:
             if each.edits not in seen:
                 seen.add(each.edits)
                 actions.append(_quick_fix(session, client, file, finding, each))
@@ -87,21 +91,19 @@ async def _quick_fixes(
     return actions
 
 
-async def _offers(session: Session, file: OpenFile, finding: Finding, *, wait: bool) -> tuple[Offer, ...]:
-    """The remedies of a finding; none where the file was edited meanwhile.
+async def _offers(session: Session, document: Document, finding: Finding, *, wait: bool) -> tuple[Offer, ...]:
+    """The remedies of a finding.
 
     Where the user asked for them, the questions that they ask are waited for. A light bulb that comes by
     itself shows what is known already.
     """
-    document = session.read(file)
     ask = unanswered if wait else None
-    while file.document is document:
+    while True:
         try:
             return offer(document, finding, session.answers.kept, ask, session.memo)
         except UnansweredError as missing:
             if not await session.answer(missing.question):
                 ask = None
-    return ()
 
 
 def _quick_fix(session: Session, client: Client, file: OpenFile, finding: Finding, each: Offer) -> Action:

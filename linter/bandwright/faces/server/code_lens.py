@@ -1,4 +1,4 @@
-"""Code lenses: above each filter its smallest IIR and FIR filter, and how many of its worst findings there are.
+"""Code lenses: above each filter its smallest IIR and FIR filter, and its worst findings.
 
 They are for reading: a command with an empty name is shown as text by the editors that show lenses, and
 can't be run.

@@ -22,6 +22,7 @@ from functools import lru_cache
 from itertools import pairwise
 from typing import Literal, NamedTuple
 
+from bandwright import limits
 from bandwright.theory.closed_form import fir_length, polynomials
 from bandwright.theory.closed_form.types import Design, Mask, MaskBand, Root
 
@@ -489,6 +490,8 @@ def _prediction(
                 slack = min(slack, level - lower)
                 deviation = math.hypot(*of_a, math.hypot(*of_b) / gain) if gain else math.inf
                 worst = max(worst, deviation / max(level - lower, NO_MARGIN))
+    if len(rippling) > limits.MAX_COMPARED_GAINS:
+        raise OverflowError("too many places where the gain may leave its window")
     for first, (number, window, level, change, deviation) in enumerate(rippling):
         for other, other_window, other_level, other_change, other_deviation in rippling[:first]:
             if other != number and not gain_is_free:

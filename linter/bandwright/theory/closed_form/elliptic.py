@@ -1,8 +1,8 @@
 """Elliptic (Cauer) filters: F is the elliptic rational function, ripple in pass and stop band.
 
 With k = 1/E, E = 1 + e, and k1 = sqrt(gp/gs), the order is N = [K(k)/K'(k)] [K'(k1)/K(k1)]: the nome of
-k1 is that of k to the power N (Cauer 1931; Antoniou 1979; Orfanidis 2006, "Lecture notes on elliptic
-filter design": from memory). F is the same function seen from the stop edge: F(E)/F(E/x) = F(x).
+k1 is that of k to the power N (Cauer 1931; Antoniou 1979; Orfanidis 2006, on elliptic filter design; from
+memory). F is the same function seen from the stop edge: F(E)/F(E/x) = F(x).
 """
 
 from __future__ import annotations
