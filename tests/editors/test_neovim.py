@@ -81,13 +81,13 @@ def test_hints_and_lenses_show_the_figures_of_each_filter(with_more: Neovim) -> 
     assert "Hz wide, ratio " in row(with_more, "- stop: {from: 25.6 Hz")
     assert "4 kHz, q31" in row(with_more, "device: hoist-node")
     assert "±0.05 dB, ±0.576 %" in row(with_more, "- pass: {to: 20 Hz, ripple: 0.1 dB")
-    lens = until("the lens above a filter", lambda: row(with_more, "elliptic order"))
+    lens = until("the lens of a filter", lambda: row(with_more, "strain-slow: elliptic order"))
     assert " taps" in lens
 
 
 def test_completion_comes_while_typing_and_its_entry_is_taken(with_more: Neovim) -> None:
     until("the server", lambda: row(with_more, "family: elliptic").count("order"))
-    with_more.keys("Go    transitions: ")
+    with_more.keys("Gotransitions: ")
     until("the list", lambda: "unbounded" in with_more.screen())
     with_more.picture("completion")
     with_more.keys("unb")

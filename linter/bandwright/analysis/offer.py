@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from bandwright.analysis import accepting
 from bandwright.analysis.analyse import Memo, analyse_filter
-from bandwright.analysis.quotes import Quotes, Untold
+from bandwright.analysis.quotes import Quotes, UntoldError
 from bandwright.analysis.types import Analysis, Finding, Offer
 from bandwright.bandfile import edits as text_edits
 from bandwright.bandfile.reader import read
@@ -135,7 +135,7 @@ class _Bench:
         return new[mine] < old[mine] and all(reveals and rule.find is not None for rule in bad)
 
     def _titled(self, title: str, before: Forecast, after: Forecast) -> str | None:
-        """The title with its figures, asked for where they are not there yet; None where one can't be told."""
+        """The title with its figures, which are asked for where need be; None where one can't be told."""
         while True:
             try:
                 return title.format(before=Quotes(before), after=Quotes(after))
@@ -144,7 +144,7 @@ class _Bench:
                     return None
                 self.answers[wait.question] = self.answer(wait.question)
                 before, after = Forecast(before.filter, self.answers), Forecast(after.filter, self.answers)
-            except Untold:
+            except UntoldError:
                 return None
 
 

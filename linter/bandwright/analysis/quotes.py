@@ -7,7 +7,7 @@ from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.types import Figure
 
 
-class Untold(Exception):
+class UntoldError(Exception):
     """A title quotes a figure that the forecast has not got."""
 
 
@@ -17,7 +17,7 @@ class Quotes:
 
     Raises:
         Waiting: the figure's question is not answered yet.
-        Untold: there is no such figure.
+        UntoldError: there is no such figure.
     """
 
     def __init__(self, forecast: Forecast) -> None:
@@ -29,10 +29,10 @@ class Quotes:
         if name.startswith("maximum_"):
             limit = forecast.maximum(name.removeprefix("maximum_"))
             if limit is None:
-                raise Untold(name)
+                raise UntoldError(name)
             return forecast.in_words(name.removeprefix("maximum_"), limit)
         if one is None:
-            raise Untold(name)
+            raise UntoldError(name)
         if name in ("family", "structure"):
             return str(getattr(one, name))
         if name == "bits":
@@ -42,5 +42,5 @@ class Quotes:
     def _exact(self, figure: Figure | None) -> float:
         value = self._case.exact(figure) if figure is not None else None
         if value is None:
-            raise Untold
+            raise UntoldError
         return value

@@ -83,7 +83,7 @@ def mask(filter: Filter, items_read: tuple[Band, ...] | None = None) -> Mask | N
             )
         )
     ordered = [item for item in items if item.kind != "bounds"]
-    for before, after in zip(ordered, ordered[1:], strict=False):
+    for before, after in itertools.pairwise(ordered):
         if after.low < before.high or (after.low == before.high and "pass" in (before.kind, after.kind)):
             return None
     if not any(item.kind == "pass" for item in items) or too_close(items):
@@ -93,7 +93,7 @@ def mask(filter: Filter, items_read: tuple[Band, ...] | None = None) -> Mask | N
 
 
 def too_close(items: Iterable[Band | MaskBand]) -> tuple[float, float] | None:
-    """The first two edges, 0 Hz and Nyquist among them, that differ by less than `LEAST_WIDTH`; rad/sample."""
+    """The first two edges, 0 Hz and Nyquist among them, nearer than `LEAST_WIDTH`; rad/sample."""
     edges = {0.0, math.pi}
     for item in items:
         edges.update(min(edge, math.pi) for edge in (item.low, item.high) if edge is not None)

@@ -19,7 +19,7 @@ from bandwright.theory.closed_form.types import Mask
 
 @dataclass(frozen=True, slots=True)
 class Candidate:
-    """One family's way to meet a mask. Where it has none, `order` and `taps` are None and `why_not` says why."""
+    """One family's way to meet a mask; where it has none, `order` and `taps` are None, `why_not` says why."""
 
     family: str
     kind: Literal["iir", "fir"]

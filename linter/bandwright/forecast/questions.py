@@ -47,9 +47,10 @@ class CoefficientBits:
 
 @dataclass(frozen=True, slots=True)
 class CoefficientBitsAnswer:
-    """The least word at which nine of ten seeded roundings, and plain rounding, keep the mask; None beyond the limit."""
+    """The least word at which nine of ten seeded roundings, and plain rounding, keep the mask."""
 
     bits: int | None
+    """None where the search came to its limit."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -52,10 +52,10 @@ def questions(table: tuple[Row, ...]) -> Iterator[Question]:
     seen: set[Question] = set()
     for row in table:
         for figure in (row.taps, *row.mantissa_bits.values(), *row.word_bits.values()):
-            if figure is not None and figure.question is not None and not figure.exact:
-                if figure.question not in seen:
-                    seen.add(figure.question)
-                    yield figure.question
+            question = figure.question if figure is not None and not figure.exact else None
+            if question is not None and question not in seen:
+                seen.add(question)
+                yield question
 
 
 def _row(forecast: Forecast, one: Candidate) -> Row:
