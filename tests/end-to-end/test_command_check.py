@@ -165,7 +165,10 @@ def test_standard_input_has_a_name(bandwright: Run) -> None:
 @pytest.mark.parametrize(
     ("arguments", "words"),
     [
-        (("check", "--as", "yaml"), "bandwright check: argument --as: `yaml` is not one of text, json."),
+        (
+            ("check", "--as", "yaml"),
+            "bandwright check: argument --as: `yaml` is not one of text, json, sarif, junit.",
+        ),
         (("check", "--fromat"), "bandwright check: there is no option `--fromat`."),
         (("check", "--today", "30.6.2027"), "`30.6.2027` is not a date such as 2027-06-30."),
         (("chek",), "bandwright: there is no command `chek`; did you mean `check`?"),

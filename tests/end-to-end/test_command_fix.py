@@ -66,7 +66,7 @@ def test_in_place_every_other_byte_stays(
 
     file.write_bytes(bytes_of(SLIPPED))
     done = bandwright("fix", "--in-place", "hoist.bands.yaml")
-    assert (done.returncode, done.stdout) == (0, b"")
+    assert (done.returncode, done.stdout) == (1, b"")
     assert b"3 remedies applied\n" in done.stderr
     assert file.read_bytes() == bytes_of(SOUND)
     again = bandwright("fix", "--in-place", "hoist.bands.yaml")

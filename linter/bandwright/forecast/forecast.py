@@ -1,6 +1,7 @@
 """The forecast of one filter: what every family would take.
 
-It is computed from the filter's value and the answers to its questions. Figures that cost more than an order are computed when somebody asks for them, and kept.
+It is computed from the filter's value and the answers to its questions. Figures that cost more than an
+order are computed when somebody asks for them, and kept.
 """
 
 from __future__ import annotations

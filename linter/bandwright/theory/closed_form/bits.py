@@ -466,6 +466,8 @@ def _prediction(
     `changes` takes v and |H| over the highest gain.
     """
     mask = survey.mask
+    if max(map(len, survey.nodes)) > limits.MAX_COMPARED_GAINS:
+        raise OverflowError("too many places where the gain may leave its window")
     passes = any(band.kind == "pass" for band in mask.bands)
     gain_is_free = passes and all(band.relative for band in mask.bands)
     worst, slack = max(unstable, default=0.0), 1.0
@@ -490,8 +492,6 @@ def _prediction(
                 slack = min(slack, level - lower)
                 deviation = math.hypot(*of_a, math.hypot(*of_b) / gain) if gain else math.inf
                 worst = max(worst, deviation / max(level - lower, NO_MARGIN))
-    if len(rippling) > limits.MAX_COMPARED_GAINS:
-        raise OverflowError("too many places where the gain may leave its window")
     for first, (number, window, level, change, deviation) in enumerate(rippling):
         for other, other_window, other_level, other_change, other_deviation in rippling[:first]:
             if other != number and not gain_is_free:
