@@ -122,8 +122,12 @@ class Forecast:
 
     def bits(self, one: Candidate, structure: str, number_format: str) -> Figure | None:
         """Coefficient bits in a structure: mantissa bits (`floating`) or the word with its sign (`fixed`)."""
+        row = STRUCTURES.get(structure)
+        if row is None or row.kind != one.kind:
+            return None
+        # Structures that store the same coefficients share one figure.
         return self._keep(
-            ("bits", one.family, structure, number_format), lambda: self._bits(one, structure, number_format)
+            ("bits", one.family, row.stores, number_format), lambda: self._bits(one, row, number_format)
         )
 
     def own_bits(self, one: Candidate) -> Figure | None:
@@ -136,9 +140,8 @@ class Forecast:
             return None
         return self.bits(one, one.structure, arithmetic.number_format if arithmetic else "floating")
 
-    def _bits(self, one: Candidate, structure: str, number_format: str) -> Figure | None:
-        row = STRUCTURES.get(structure)
-        if row is None or row.kind != one.kind or self.mask is None:
+    def _bits(self, one: Candidate, row: StructureRow, number_format: str) -> Figure | None:
+        if self.mask is None:
             return None
         form: bit_theory.NumberFormat = "floating" if number_format == "floating" else "fixed"
         if one.taps is not None:
