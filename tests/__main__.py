@@ -24,6 +24,10 @@ GENERATED = {
     "schemas/bandfile.schema.json": (*BANDWRIGHT, "schema", "band-file"),
     "schemas/check.schema.json": (*BANDWRIGHT, "schema", "check"),
     "schemas/forecast.schema.json": (*BANDWRIGHT, "schema", "forecast"),
+    "linter/bandwright/guide/band-file.md": (
+        "-c",
+        "from bandwright.bandfile.reference import reference; print(reference(), end='')",
+    ),
     "linter/bandwright/guide/index.md": ("tests/unit/findings/test_guide_index.py",),
     "tests/corpus/expected.txt": ("tests/unit/findings/test_corpus.py",),
     "tests/cold-modules.txt": ("tests/unit/test_cold_modules.py",),

@@ -18,7 +18,7 @@ from bandwright.faces.server.session import Session
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.gaps import gaps
-from bandwright.forecast.neighbours import transition
+from bandwright.forecast.neighbours import Transition
 from bandwright.forecast.words import shown
 
 
@@ -80,9 +80,8 @@ def _hints(forecast: Forecast) -> Iterator[Hint]:
     yield from _built_as(forecast)
     yield from _brought(filter)
     for gap in gaps(filter):
-        seen = transition(filter, gap.above)
-        if seen is not None and seen.width > 0.0:
-            width = edge.width_in_words(forecast, seen)
+        if gap.width > 0.0:
+            width = edge.width_in_words(forecast, Transition(gap.low, gap.high))
             yield Hint(gap.above, width, f"The transition from {gap.low_written} to {gap.high_written}.")
     for index, kind in filter.band_kinds():
         path = ("bands", index, kind, "ripple")
