@@ -167,7 +167,7 @@ def test_standard_input_has_a_name(bandwright: Run) -> None:
     [
         (
             ("check", "--as", "yaml"),
-            "bandwright check: argument --as: `yaml` is not one of text, json, sarif, junit.",
+            "argument --as: `yaml` is not one of text, json, sarif, junit.",
         ),
         (("check", "--fromat"), "bandwright check: there is no option `--fromat`."),
         (("check", "--today", "30.6.2027"), "`30.6.2027` is not a date such as 2027-06-30."),

@@ -18,7 +18,12 @@ from bandwright.findings.catalogue import RULES
 Run = Callable[..., subprocess.CompletedProcess[bytes]]
 Json = dict[str, Any]
 
-CORPUS = Path(__file__).resolve().parents[1] / "corpus"
+CORPUS = [
+    Path(__file__).resolve().parents[1] / "corpus" / f"{name}.bands.yaml"
+    for name in ("accepted", "keys", "levels")
+]
+"""Band files with findings of every severity."""
+
 GUIDE = Path(__file__).resolve().parents[2] / "linter" / "bandwright" / "guide" / "findings"
 
 HOIST = """\
@@ -152,7 +157,7 @@ def place(location: Json) -> tuple[str, int, int, int, int]:
 
 
 def test_it_holds_what_the_json_holds(bandwright: Run, log: Log, tmp_path: Path) -> None:
-    for file in CORPUS.glob("*.bands.yaml"):
+    for file in CORPUS:
         (tmp_path / file.name).write_bytes(file.read_bytes())
     levels = {"error": "error", "warning": "warning", "information": "note", "hint": "note"}
     plain = json.loads(bandwright("check", "--as", "json", *DAY).stdout)["findings"]
@@ -311,16 +316,14 @@ def test_a_band_put_before_another_leaves_the_fingerprints_of_that_one(log: Log)
 
 
 def test_equal_findings_of_a_filter_are_told_apart(log: Log) -> None:
-    twice = (
-        HOIST + "    accepted:\n      - {finding: order/over-maximum}\n      - {finding: cost/far-dearer}\n"
-    )
-    found = fingerprints(log("-", input=twice.encode()))
+    entries = "      - {finding: order/over-maximum}\n      - {finding: cost/far-dearer}\n"
+    found = fingerprints(log("-", input=f"{HOIST}    accepted:\n{entries}".encode()))
     assert list(found.values()).count("accepted/no-reason") == 2
 
 
 def test_it_is_the_same_in_every_run_and_tells_no_place_or_time(bandwright: Run, tmp_path: Path) -> None:
-    for name in ("accepted", "keys"):
-        (tmp_path / f"{name}.bands.yaml").write_bytes((CORPUS / f"{name}.bands.yaml").read_bytes())
+    for file in CORPUS:
+        (tmp_path / file.name).write_bytes(file.read_bytes())
     outputs = {
         bandwright("check", "--as", "sarif", *DAY, folder, env={"PYTHONHASHSEED": seed}).stdout
         for seed, folder in (("1", "."), ("2", str(tmp_path)))

@@ -28,8 +28,6 @@ BAD = GOOD.replace("family: elliptic", "family: butterworth")
 SLIPPED = GOOD.replace("family:", "familly:")
 """A key with a slip, which has one remedy, and that keeps the requirement."""
 
-HOOKS = "  - id: bandwright-fix\n  - id: bandwright-check\n"
-
 
 Run = Callable[..., subprocess.CompletedProcess[str]]
 
@@ -47,12 +45,13 @@ def run(git_settings: dict[str, str], tmp_path_factory: pytest.TempPathFactory) 
 
 
 @pytest.fixture
-def project(checkout: Path, tmp_path: Path, run: Run) -> Path:
-    """A repository of a user, with the hooks set up from the checkout and already installed."""
+def project(checkout: Path, tmp_path: Path, run: Run, request: pytest.FixtureRequest) -> Path:
+    """A repository of a user, with the hooks of the test set up from the checkout and already installed."""
     folder = tmp_path / "project"
     folder.mkdir()
     revision = run(checkout, "git", "rev-parse", "HEAD").stdout.strip()
-    config = f"repos:\n- repo: file://{checkout}\n  rev: {revision}\n  hooks:\n{HOOKS}"
+    hooks = "".join(f"  - id: {hook}\n" for hook in request.param)
+    config = f"repos:\n- repo: file://{checkout}\n  rev: {revision}\n  hooks:\n{hooks}"
     (folder / ".pre-commit-config.yaml").write_text(config, encoding="utf-8")
     run(folder, "git", "init", "--quiet")
     installed = run(folder, str(PRE_COMMIT), "install", "--install-hooks")
@@ -75,6 +74,7 @@ def commit(project: Path, run: Run) -> Commit:
     return commit
 
 
+@pytest.mark.parametrize("project", [["bandwright-check"]], indirect=True, ids=["check"])
 def test_a_commit_that_breaks_a_requirement_is_refused_until_it_is_put_right(
     project: Path, run: Run, commit: Commit
 ) -> None:
@@ -89,6 +89,9 @@ def test_a_commit_that_breaks_a_requirement_is_refused_until_it_is_put_right(
     assert run(project, "git", "show", "HEAD:hoist.bands.yaml").stdout == GOOD
 
 
+@pytest.mark.parametrize(
+    "project", [["bandwright-fix", "bandwright-check"]], indirect=True, ids=["fix and check"]
+)
 def test_a_slip_is_put_right_and_the_commit_waits_for_a_look_at_it(
     project: Path, run: Run, commit: Commit
 ) -> None:

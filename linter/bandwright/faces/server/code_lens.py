@@ -30,10 +30,11 @@ async def code_lens(
     findings = await session.findings(file)
     document, lines = session.read(file), session.lines(file)
     found = []
-    for index, _ in document.filters:
-        block, forecast = document.blocks[index], session.newest_forecast(file, index)
-        if forecast is None or not block.whole:
+    for index, filter in document.filters:
+        block = document.blocks[index]
+        if not block.whole:
             continue
+        forecast = session.newest_forecast(file, index, filter)
         own = [one for one in findings if one.block == index and not one.accepted]
         if title := " · ".join([*_smallest(forecast), *_worst(own)]):
             name = in_document(document, block, block.marks[()].key)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import asyncio
+import time
 from collections.abc import Iterator
 from typing import Any, NamedTuple
 
@@ -14,7 +16,7 @@ from bandwright.bandfile.values import Block, Document, Filter, Path, Quantity, 
 from bandwright.faces.forecast_table import certainty, label
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.hovers import device, edge
-from bandwright.faces.server.session import Session
+from bandwright.faces.server.session import SLICE_S, Session
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
 from bandwright.forecast.gaps import gaps
@@ -37,18 +39,23 @@ async def inlay_hints(
     file = session.files.get(params.text_document.uri)
     if file is None:
         return None
-    await session.findings(file)  # by then everything is analysed
     document, lines = session.read(file), session.lines(file)
     wanted = lines.span(params.range)
     found = []
-    for index, _ in document.filters:
-        block, forecast = document.blocks[index], session.newest_forecast(file, index)
-        if forecast is None or not block.whole or not _is_within(block, wanted):
+    started = time.monotonic()
+    for index, filter in document.filters:
+        block = document.blocks[index]
+        if not block.whole or not _is_within(block, wanted):
             continue
-        for hint in _hints(forecast):
+        for hint in _hints(session.newest_forecast(file, index, filter)):
             place = _place(document, block, hint.path)
             if place is not None and wanted[:2] <= place <= wanted[2:]:
                 found.append((place, hint))
+        if time.monotonic() - started > SLICE_S:
+            await asyncio.sleep(0)
+            if file.document is not document:
+                return None  # it was edited meanwhile, and the client will ask again
+            started = time.monotonic()
     return [
         {
             "position": lines.plain_range(Span(*place, *place))["start"],

@@ -166,15 +166,11 @@ class Session:
             file.analyses[block] = analyse_filter(filter, Lookups(self.answers.kept), self.memo)
         return file.analyses[block]
 
-    def newest_forecast(self, file: OpenFile, block: int) -> Forecast | None:
-        """The forecast of a filter that was analysed, with the lengths that were computed since."""
-        known = file.analyses.get(block)
-        if known is None:
-            return None
-        questions = {one.taps.question for one in known.forecast.candidates if one.taps is not None}
-        if questions.isdisjoint(self.answers.kept):
-            return known.forecast
-        return Forecast(known.filter, self.answers.kept)
+    def newest_forecast(self, file: OpenFile, block: int, filter: Filter) -> Forecast:
+        """The forecast of one filter of the file's document, with the lengths that were computed since."""
+        known = self.analysis(file, block, filter).forecast
+        questions = {one.taps.question for one in known.candidates if one.taps is not None}
+        return known if questions.isdisjoint(self.answers.kept) else Forecast(filter, self.answers.kept)
 
     def _is_open(self, file: OpenFile, block: int) -> bool:
         """Whether a filter is not analysed yet, or a question that its analysis left open is answered now."""
