@@ -23,8 +23,11 @@ from scipy import signal
 from properties.whole_path import times
 
 RATE = 8000.0
-SLACK_DB = 1e-6
-"""For the rounding of a design that just meets the mask."""
+SLACK_DB = 1e-5
+"""For a design that just meets the mask, and for peaks between the frequencies that are looked at."""
+
+CLOSE = 0.01
+"""An order this little above a whole one misses the mask by less than the slack."""
 
 FAMILIES: dict[str, Callable[..., Any]] = {
     "butterworth": signal.buttord,
@@ -131,12 +134,12 @@ def test_the_order_is_the_one_that_designs_need(
     for case, said in judged:
         order = said[family]["order"]
         assert meets(family, order, case), case
-        assert not meets(family, order - 1, case), case
+        unrounded = said[family]["order_unrounded"]
+        assert not meets(family, order - 1, case) or unrounded - (order - 1) < CLOSE, case
         theirs, _ = FAMILIES[family](
             case.pass_edge, case.stop_edge, case.ripple, case.attenuation, fs=RATE
         )
-        tie = abs(said[family]["order_unrounded"] - round(said[family]["order_unrounded"])) < 1e-9
-        assert order == theirs or tie, case
+        assert order == theirs or abs(unrounded - round(unrounded)) < 1e-9, case
 
 
 def rounded(values: NDArray[np.float64], bits: int, exponent: int | None) -> NDArray[np.float64]:

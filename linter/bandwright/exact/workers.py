@@ -77,6 +77,14 @@ class Worker:
                 self._process.kill()
 
 
+    async def gone(self) -> None:
+        """Wait until an ended process is gone; one that could not even start is."""
+        with contextlib.suppress(EOFError, OSError):
+            await self.started()
+        if self._process is not None:
+            await self._process.wait()
+
+
 class Workers:
     """Answers what is wanted, one question at a time."""
 
@@ -94,6 +102,7 @@ class Workers:
         self._worker: Worker | None = None
         self._spare: Worker | None = None
         self._deaths: dict[Question, int] = {}
+        self._ending: set[asyncio.Task[None]] = set()
 
     @property
     def pids(self) -> tuple[int | None, ...]:
@@ -112,6 +121,10 @@ class Workers:
         self._wanted = ()
         self._replace()
         self._replace()
+
+    async def gone(self) -> None:
+        """Wait until the processes that were ended are gone: a loop that closes before leaves them behind."""
+        await asyncio.gather(*self._ending)
 
     def _take_up(self) -> None:
         """Start on the next question, where none is worked on."""
@@ -147,6 +160,9 @@ class Workers:
             self._job.cancel()
         if self._worker is not None:
             self._worker.end()
+            ending = asyncio.get_running_loop().create_task(self._worker.gone())
+            self._ending.add(ending)
+            ending.add_done_callback(self._ending.discard)
         self._question = self._job = None
         self._worker, self._spare = self._spare, None
         if self._wanted:

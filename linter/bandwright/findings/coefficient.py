@@ -203,8 +203,8 @@ def wide_spread(case: Case) -> Iterator[Hit]:
 def _carried(case: Case, id: str, *, barely: bool) -> Iterator[Hit]:
     """What an expanded polynomial takes of a word that carries it: nearly all of it, or less."""
     stored = _stored(case)
-    if stored is None or not stored.expanded:
-        return
+    if stored is None or not stored.expanded or (stored.one.order or 0) <= 2:
+        return  # of order 2, one direct form is one second-order section
     bits, both = case.forecast.own_bits(stored.one), case.forecast.expanded(stored.one)
     if bits is None or both is None or case.exceeds(bits, stored.has):
         return

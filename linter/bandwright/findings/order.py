@@ -41,16 +41,21 @@ SMALL_MOVE = 0.2
 )
 def over_maximum(case: Case) -> Iterator[Hit]:
     """Every allowed family is IIR and needs a higher order than the maximum."""
-    filter, over = case.filter, maxima.excess(case, "order")
+    filter, pinned, limit = case.filter, case.filter.count("order"), case.forecast.maximum("order")
+    if pinned is not None:
+        if limit is not None and pinned > limit and any(one.kind == "iir" for one in maxima.built(case)):
+            facts = (("order", pinned), ("maximum", f"{limit:g}"))
+            yield Hit(
+                "order/over-maximum", Place(("order",)), facts, "pinned", _maximum(case), (float(pinned), "")
+            )
+        return
+    over = maxima.excess(case, "order")
     if over is None:
         yield from _beyond(case)
         return
     one, order = over.candidate, over.figure.value
     facts = (("family", opening(one.family)), ("order", f"{order:g}"), ("maximum", f"{over.limit:g}"))
     figure = (order, "")
-    if filter.count("order") is not None:
-        yield Hit("order/over-maximum", Place(("order",)), facts, "pinned", _maximum(case), figure)
-        return
     gap = gaps.bound_by(case.gaps, one.binding)
     if gap is None:
         return

@@ -24,7 +24,7 @@ class Noting:
     ) -> None:
         self.answered, self.given_up = answered, given_up
         self.wants: list[list[Question]] = []
-        self.closed = False
+        self.closed = self.is_gone = False
         Noting.last = self
 
     last: Noting
@@ -34,6 +34,9 @@ class Noting:
 
     def close(self) -> None:
         self.closed = True
+
+    async def gone(self) -> None:
+        self.is_gone = self.closed
 
 
 @pytest.fixture(autouse=True)
@@ -123,11 +126,11 @@ def test_a_question_that_no_worker_survives_is_no_longer_waited_for() -> None:
 def test_closing_ends_the_workers() -> None:
     async def run() -> None:
         ask = asking({})
-        ask.close()
+        await ask.close()
         waiting = asyncio.create_task(ask.any_of([FIRST]))
         await asyncio.sleep(0)
-        ask.close()
-        assert Noting.last.closed
+        await ask.close()
+        assert Noting.last.is_gone
         waiting.cancel()
 
     asyncio.run(run())

@@ -46,12 +46,13 @@ class Asking:
             self._urgent.discard(waiting)
             self._tell_later()
 
-    def close(self) -> None:
-        """End the workers."""
+    async def close(self) -> None:
+        """End the workers, and wait until they are gone."""
         if self._later is not None:
             self._later.cancel()
         if self._workers is not None:
             self._workers.close()
+            await self._workers.gone()
 
     def _tell_later(self) -> None:
         """Let the workers know soon, as whoever got an answer, or was edited, mostly asks again at once."""

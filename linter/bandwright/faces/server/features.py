@@ -91,9 +91,9 @@ class Features:
         except Exception as error:
             self._failed(method, error)
 
-    def leave(self) -> None:
+    async def leave(self) -> None:
         """Let go of everything, as the process ends."""
-        self._session.leave()
+        await self._session.leave()
 
     def _publish(self, file: OpenFile, findings: tuple[Finding, ...]) -> None:
         texts = self._texts.setdefault(file.uri, Texts())

@@ -148,6 +148,9 @@ class Server(LanguageServer):
 
     def client_left(self) -> None:
         """End the process: with 0 if the client had said `shutdown`, else with 1."""
+        self._leaving = asyncio.get_running_loop().create_task(self._leave())
+
+    async def _leave(self) -> None:
         if "features" in self.__dict__:  # and so in use
-            self.features.leave()
+            await self.features.leave()
         self._finish(0 if self.protocol.is_shut_down else 1)

@@ -196,9 +196,9 @@ class Session:
             await self._asking.any_of([question], urgent=True)
         return question in self.answers.kept
 
-    def leave(self) -> None:
-        """End the workers."""
-        self._asking.close()
+    async def leave(self) -> None:
+        """End the workers, and wait until they are gone."""
+        await self._asking.close()
 
     def _keep(self, question: Question, answer: Answer) -> None:
         self.answers.add(question, answer, self._in_use)
