@@ -13,6 +13,7 @@ from collections.abc import Callable, Iterator, Sequence
 from functools import partial
 from itertools import pairwise
 
+from bandwright import limits
 from bandwright.theory.closed_form.elliptic_functions import log_nome
 from bandwright.theory.closed_form.family import Family
 from bandwright.theory.closed_form.selectivity import Selectivity, Transition
@@ -38,7 +39,8 @@ def free(family: Family, selectivity: Selectivity) -> bool:
 def best_edge(family: Family, selectivity: Selectivity, order: int) -> float:
     """The e at which a prototype with a free edge exceeds the mask by the most.
 
-    It is not moved to make use of a stop band's end where the mask is met without.
+    It is not moved to make use of a stop band's end where the mask is met without. Beyond
+    `limits.MAX_SCANNED_ORDER` the best of a few likely places is taken.
     """
     transitions = selectivity.transitions
     level = _level_edge(family, selectivity, order) if len(transitions) > 1 else transitions[0].e
@@ -51,9 +53,9 @@ def best_edge(family: Family, selectivity: Selectivity, order: int) -> float:
         if max(one_excess(family, selectivity, order, e, one) for e in edges) < 0.0:
             return level
         centred += edges
-    if len(transitions) > 1:
+    if len(transitions) > 1 and order <= limits.MAX_SCANNED_ORDER:
         return _scanned_edge(family, selectivity, order, level)
-    return max(centred, key=lambda e: log_excess(family, selectivity, order, e))
+    return max([level, *centred], key=lambda e: log_excess(family, selectivity, order, e))
 
 
 def log_excess(family: Family, selectivity: Selectivity, order: float, e: float) -> float:
