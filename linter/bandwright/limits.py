@@ -21,6 +21,9 @@ MAX_NAMES_COMPARED = 256
 MAX_IIR_ORDER = 512
 """Orders beyond this are reported as "more than"; no filter of the trade comes near."""
 
+MAX_SCANNED_ORDER = 64
+"""Prototypes up to this order have their free edge sought over all lobes of several stop bands."""
+
 MAX_EXACT_TAPS = 2_000
 """The longest FIR filter that the exchange is asked to design."""
 

@@ -71,7 +71,9 @@ def random_case(dice: random.Random) -> Case:
 
 def forecasts(cases: list[Case], folder: Path) -> Iterator[dict[str, dict[str, Any]]]:
     """What the command says of each case, by family."""
-    blocks = [f"  case-{n}:\n    sample_rate: 8 kHz\n    bands:\n{case.bands}" for n, case in enumerate(cases)]
+    blocks = [
+        f"  case-{n}:\n    sample_rate: 8 kHz\n    bands:\n{case.bands}" for n, case in enumerate(cases)
+    ]
     file = folder / "cases.bands.yaml"
     file.write_text("\n".join(["format: bandwright/1", "filters:", *blocks, ""]), encoding="utf-8")
     command = [Path(sys.executable).with_name("bandwright"), "forecast", file.name, "--as", "json"]
@@ -136,9 +138,7 @@ def test_the_order_is_the_one_that_designs_need(
         assert meets(family, order, case), case
         unrounded = said[family]["order_unrounded"]
         assert not meets(family, order - 1, case) or unrounded - (order - 1) < CLOSE, case
-        theirs, _ = FAMILIES[family](
-            case.pass_edge, case.stop_edge, case.ripple, case.attenuation, fs=RATE
-        )
+        theirs, _ = FAMILIES[family](case.pass_edge, case.stop_edge, case.ripple, case.attenuation, fs=RATE)
         assert order == theirs or abs(unrounded - round(unrounded)) < 1e-9, case
 
 

@@ -136,6 +136,6 @@ def test_mending_ends_and_leaves_nothing_to_mend(name: str) -> None:
     assert len(rounds) < limits.MAX_FIX_ROUNDS
     last = read(rounds[-1][0].text) if rounds else document
     for finding in found_in(last):
-        assert finding.accepted or all(
-            each.kind != "keeps-requirement" for each in offers(last, finding)
-        ), finding.message
+        assert finding.accepted or all(each.kind != "keeps-requirement" for each in offers(last, finding)), (
+            finding.message
+        )

@@ -58,7 +58,7 @@ def test_line_ends_and_marks_leave_findings_where_they_are(
 def test_words_of_other_scripts_only_move_findings(name: str, word: str) -> None:
     """The name of a filter and a remark ahead of a value, in one line with what is found."""
     text = plain(name)
-    changed = text.replace(f"  {NAME}:", f"  {word}:").replace(PURPOSE, word).replace("{to: ", f"{{to:  ")
+    changed = text.replace(f"  {NAME}:", f"  {word}:").replace(PURPOSE, word).replace("{to: ", "{to:  ")
     before, after = examine(text), examine(changed)
     assert shape(after) == shape(before)
     assert [one.span.line for one in after] == [one.span.line for one in before]
@@ -70,7 +70,9 @@ def test_words_of_other_scripts_only_move_findings(name: str, word: str) -> None
 @pytest.mark.parametrize("name", FILES)
 def test_other_signs_for_the_same_units_are_the_same_numbers(name: str) -> None:
     text = plain(name)
-    changed = text.replace(" pi,", "π,").replace("±", "+-").replace(" kHz", "\u202fkHz").replace(" Hz", "\u00a0Hz")
+    changed = (
+        text.replace(" pi,", "π,").replace("±", "+-").replace(" kHz", "\u202fkHz").replace(" Hz", "\u00a0Hz")
+    )
     assert changed != text
     assert [one.id for one in examine(changed)] == [one.id for one in examine(text)]
 

@@ -142,7 +142,8 @@ def _out_of_range(number: float, unit: str) -> Trouble | None:
     if number == 0.0 or least <= abs(_scaled(number, exponent)) <= most:
         return None
     facts = tuple(
-        (name, show(_scaled(end, -exponent), dimension, unit)) for name, end in (("least", least), ("most", most))
+        (name, show(_scaled(end, -exponent), dimension, unit))
+        for name, end in (("least", least), ("most", most))
     )
     return Trouble("key/wrong-kind", "out-of-range", facts)
 
@@ -309,7 +310,11 @@ def show_number(number: float, digits: int = 4) -> str:
     text = full if float(full) == number else short
     if "e" not in text:
         return text
-    return f"{float(text):.0f}" if 1 <= abs(number) < 1e7 else text.replace("e-0", "e-").replace("e+0", "e").replace("e+", "e")
+    return (
+        f"{float(text):.0f}"
+        if 1 <= abs(number) < 1e7
+        else text.replace("e-0", "e-").replace("e+0", "e").replace("e+", "e")
+    )
 
 
 def show(value: float, dimension: str, unit: str | None = None, digits: int = 4) -> str:
