@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import random
 import re
+from collections.abc import Callable
 
 import pytest
 
@@ -51,7 +52,7 @@ def with_other_characters(data: bytes, dice: random.Random) -> str:
 @pytest.mark.parametrize(
     "change", [with_other_bytes, with_other_values, with_other_lines, with_other_characters]
 )
-def test_a_mutated_file_is_answered(change) -> None:  # type: ignore[no-untyped-def]
+def test_a_mutated_file_is_answered(change: Callable[[bytes, random.Random], str | bytes]) -> None:
     for seed in times(90):
         dice = random.Random(f"{change.__name__} {seed}")
         text = change(CASES[dice.choice(NAMES)], dice)

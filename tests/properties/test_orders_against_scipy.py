@@ -50,11 +50,9 @@ class Case(NamedTuple):
 
     @property
     def bands(self) -> str:
-        passing = f"pass: {{{'to' if self.kind == 'low' else 'from'}: {self.pass_edge!r} Hz, ripple: {self.ripple!r} dB}}"
-        stopping = (
-            f"stop: {{{'from' if self.kind == 'low' else 'to'}: {self.stop_edge!r} Hz,"
-            f" attenuation: {self.attenuation!r} dB}}"
-        )
+        to, start = ("to", "from") if self.kind == "low" else ("from", "to")
+        passing = f"pass: {{{to}: {self.pass_edge!r} Hz, ripple: {self.ripple!r} dB}}"
+        stopping = f"stop: {{{start}: {self.stop_edge!r} Hz, attenuation: {self.attenuation!r} dB}}"
         both = (passing, stopping) if self.kind == "low" else (stopping, passing)
         return "\n".join(f"      - {band}" for band in both)
 
@@ -71,9 +69,8 @@ def random_case(dice: random.Random) -> Case:
 
 def forecasts(cases: list[Case], folder: Path) -> Iterator[dict[str, dict[str, Any]]]:
     """What the command says of each case, by family."""
-    blocks = [
-        f"  case-{n}:\n    sample_rate: 8 kHz\n    bands:\n{case.bands}" for n, case in enumerate(cases)
-    ]
+    heads = (f"  case-{number}:\n    sample_rate: 8 kHz\n    bands:\n" for number in range(len(cases)))
+    blocks = [head + case.bands for head, case in zip(heads, cases, strict=True)]
     file = folder / "cases.bands.yaml"
     file.write_text("\n".join(["format: bandwright/1", "filters:", *blocks, ""]), encoding="utf-8")
     command = [Path(sys.executable).with_name("bandwright"), "forecast", file.name, "--as", "json"]

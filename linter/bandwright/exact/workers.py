@@ -76,7 +76,6 @@ class Worker:
             with contextlib.suppress(ProcessLookupError):
                 self._process.kill()
 
-
     async def gone(self) -> None:
         """Wait until an ended process is gone; one that could not even start is."""
         with contextlib.suppress(EOFError, OSError):

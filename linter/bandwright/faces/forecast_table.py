@@ -77,7 +77,8 @@ def _verdict(forecast: Forecast, able: Sequence[Candidate]) -> str:
     )
     keeping = next((one for one in able if forecast.within(one)), None)
     if keeping is not None:
-        return f"{asked}; {label(keeping)} keeps every maximum."
+        keeps = "keeps" if keeping.allowed else "would keep"
+        return f"{asked}; {label(keeping)} {keeps} every maximum."
     never = [name for name in forecast.over(able[0]) if all(name in forecast.over(one) for one in able)]
     none = f"no family keeps {_maxima(forecast, never)}" if never else "no family keeps every maximum"
     return f"{none}; {label(able[0])} is the smallest."

@@ -44,9 +44,9 @@ def over_maximum(case: Case) -> Iterator[Hit]:
     filter, pinned, limit = case.filter, case.filter.count("order"), case.forecast.maximum("order")
     if pinned is not None:
         if limit is not None and pinned > limit and any(one.kind == "iir" for one in maxima.built(case)):
-            facts = (("order", pinned), ("maximum", f"{limit:g}"))
+            said = (("order", pinned), ("maximum", f"{limit:g}"))
             yield Hit(
-                "order/over-maximum", Place(("order",)), facts, "pinned", _maximum(case), (float(pinned), "")
+                "order/over-maximum", Place(("order",)), said, "pinned", _maximum(case), (float(pinned), "")
             )
         return
     over = maxima.excess(case, "order")

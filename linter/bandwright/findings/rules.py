@@ -22,7 +22,7 @@ Says = str | Mapping[str, str | tuple[str, ...]]
 LONGEST_SENTENCE = 160
 """Characters. A sentence that comes out longer gives way to the next of its form."""
 
-LONGEST_QUOTES = (48, 32, 20, 12)
+LONGEST_QUOTES = (48, 32, 20, 12, 8)
 """Characters of a fact: the user's own words are cut there, and shorter where the sentence needs it."""
 
 LISTS = ("names", "units", "wanted", "example")

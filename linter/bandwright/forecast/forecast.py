@@ -313,7 +313,8 @@ class Forecast:
         if name == "delay":
             rate = self.sample_rate_hz
             return f"{value:g} samples" if rate is None else quantities.show(value / rate, "time")
-        return f"{value:g} bytes" if name == "memory" else f"{value:g}"
+        words = quantities.show_number(value)
+        return f"{words} bytes" if name == "memory" else words
 
     def in_seconds(self, figure: Figure | None) -> Figure | None:
         """A figure in samples as one in seconds; None without a sample rate."""

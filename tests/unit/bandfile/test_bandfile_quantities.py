@@ -186,6 +186,8 @@ def test_prints_a_quantity_as_it_was_written(text: str) -> None:
 
 @given(st.floats(1e-3, 1e8), st.sampled_from(sorted(set(FITS) - {"figure", "noise"})))
 def test_what_is_printed_can_be_read(value: float, dimension: str) -> None:
+    if FITS[dimension][0] == "dB":
+        value /= 1e5  # no level is above 1000 dB
     shown = quantities.show(value, dimension)
     quantity = quantities.parse(shown, dimension)
     assert isinstance(quantity, Quantity)
