@@ -96,19 +96,28 @@ class _Lines:
 
 
 def _aligned(rows: list[list[str]], align: tuple[Align, ...]) -> _Lines:
-    """Every cell padded to the width of its column, which is 3 at least."""
-    widths = [max(3, *(len(row[at]) for row in rows)) for at in range(len(align))]
+    """Every cell padded to the width of its column, which is 3 at least.
+
+    Counted without `**`, which editors conceal.
+    """
+    widths = [max(3, *(_width(row[at]) for row in rows)) for at in range(len(align))]
     columns = list(zip(widths, align, strict=True))
     return _Lines(
         columns,
         [
             [
-                cell.rjust(width) if side == "right" else cell.ljust(width)
+                " " * (width - _width(cell)) + cell
+                if side == "right"
+                else cell + " " * (width - _width(cell))
                 for cell, (width, side) in zip(row, columns, strict=True)
             ]
             for row in rows
         ],
     )
+
+
+def _width(cell: str) -> int:
+    return len(cell.replace("**", ""))
 
 
 def _escaped(text: str) -> str:

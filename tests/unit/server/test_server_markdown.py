@@ -7,13 +7,13 @@ from bandwright.faces.markdown import Link, Table, render
 TABLE = Table(("edge", "order"), ("left", "right"), (("25 Hz", "9"), ("26 Hz", "10")), marked=0)
 
 
-def test_a_table_is_aligned_as_markdown() -> None:
+def test_a_table_is_aligned_as_markdown_whose_marks_are_concealed() -> None:
     assert render([TABLE], markdown=True) == "\n".join(
         [
-            "| edge      | order |",
-            "| --------- | ----: |",
+            "| edge  | order |",
+            "| ----- | ----: |",
             "| **25 Hz** |     9 |",
-            "| 26 Hz     |    10 |",
+            "| 26 Hz |    10 |",
         ]
     )
 
