@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-import os
+import gc
 import statistics
 import sys
 import tempfile
@@ -11,6 +11,7 @@ from collections.abc import Iterator
 from pathlib import Path
 
 from benchmarks.corpus import band_file
+from benchmarks.installed import environment
 from benchmarks.rows import Row
 from lsp_client import SERVE, Client
 
@@ -103,12 +104,14 @@ def keystrokes(*sessions: tuple[tuple[str, ...], str]) -> list[list[float]]:
     for client, (_, text) in zip(clients, sessions, strict=True):
         client.open(URI, text)
     taken: list[list[float]] = [[] for _ in sessions]
+    gc.disable()  # or this process would pause for its own garbage
     for version, texts in enumerate(zip(*(edits(text) for _, text in sessions), strict=True), 2):
         for client, text, times in zip(clients, texts, taken, strict=True):
             start = time.perf_counter()
             client.change(URI, text, version)
             client.diagnostics(URI, version)
             times.append(time.perf_counter() - start)
+    gc.enable()
     for client in clients:
         client.shut_down()
     return [times[WARM_UP:] for times in taken]
@@ -118,9 +121,7 @@ def starts() -> tuple[float, float]:
     """Median seconds from the start of a process to its answer, ours and a bare server's, by turns."""
     ours, bare = [], []
     with tempfile.TemporaryDirectory() as folder:
-        # As after an installation, which compiles every module; the first start does it here.
-        env = {name: value for name, value in os.environ.items() if name != "PYTHONDONTWRITEBYTECODE"}
-        env["PYTHONPYCACHEPREFIX"] = folder
+        env = environment(folder)
         for _ in range(1 + STARTS):
             ours.append(_start(SERVE, env))
             bare.append(_start(BARE, env))
