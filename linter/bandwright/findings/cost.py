@@ -141,18 +141,24 @@ def _over(case: Case, name: str) -> Iterator[Hit]:
         return
     exact = case.exact(over.figure)
     value = exact if exact is not None else over.figure.low
+    words = forecast.in_words(name, value)
     form = "one" if len(maxima.built(case)) == 1 else ""
     family = opening(over.candidate.family) if form else title(over.candidate.family)
     facts: tuple[tuple[str, object], ...] = (
         ("family", family),
-        (name, forecast.in_words(name, value)),
+        (name, words if exact is not None else f"at least {words}"),
         ("maximum", forecast.in_words(name, over.limit)),
         *gap.facts,
     )
     out = maxima.way_out(case, name, over.limit) if form else None
     if out is not None:
         form = "other"
-        facts = (*facts, ("other", a_filter(out[0].family)), ("less", forecast.in_words(name, out[1].value)))
+        less = forecast.in_words(name, out[1].high)
+        facts = (
+            *facts,
+            ("other", a_filter(out[0].family)),
+            ("less", less if out[1].exact else f"at most {less}"),
+        )
     maximum, limit = filter.get("at_most", name), Place(("at_most", name))
     own = maximum is not None and maximum.origin == "own"
     yield Hit(

@@ -154,7 +154,7 @@ def nothing_fits(case: Case) -> Iterator[Hit]:
     worst = []
     for one in maxima.built(case):
         ratios = [
-            (figure.value / limit, name, figure.value, limit)
+            (figure.value / limit, name, figure.exact, figure.value, limit)
             for name in MAXIMA
             if (limit := forecast.maximum(name)) and (figure := forecast.figure(one, name)) is not None
         ]
@@ -162,7 +162,7 @@ def nothing_fits(case: Case) -> Iterator[Hit]:
             worst.append((max(ratios), one))
     if not worst:
         return
-    (_, name, value, limit), one = min(worst, key=lambda pair: pair[0])
+    (_, name, is_exact, value, limit), one = min(worst, key=lambda pair: pair[0])
     gap = gaps.bound_by(case.gaps, one.binding)
     if gap is None:
         return
@@ -172,7 +172,7 @@ def nothing_fits(case: Case) -> Iterator[Hit]:
         (
             ("nearest", a_filter(one.family)),
             ("name", name),
-            ("value", forecast.in_words(name, value)),
+            ("value", ("" if is_exact else "about ") + forecast.in_words(name, value)),
             ("maximum", forecast.in_words(name, limit)),
         ),
         "",
