@@ -243,14 +243,14 @@ def noise_floor(forecast: Forecast) -> float | None:
 
 @finding(
     "level/deeper-than-arithmetic",
-    "warning",
-    "A stop band {attenuation} down lies below the rounding noise of `{data}` data, {floor} below a"
+    "information",
+    "A stop band {attenuation} down lies below the total rounding noise of `{data}` data, {floor} below a"
     " full-scale sine; ask for less, or store data in a longer word.",
     remedies=(levels.down_to(lambda forecast: noise_floor(forecast) or 0.0), words.longer_data),
     needs=("arithmetic",),
 )
 def deeper_than_arithmetic(case: Case) -> Iterator[Hit]:
-    """A stop band that no signal in the filter's fixed-point format can show."""
+    """A stop band below the noise that data in the filter's fixed-point format carry over all frequencies."""
     arithmetic, floor = case.forecast.arithmetic, noise_floor(case.forecast)
     if arithmetic is None or floor is None:
         return
