@@ -128,10 +128,10 @@ class _Bench:
     def _holds(self, old: Found, new: Found, reveals: bool) -> bool:
         """Whether the finding is gone and nothing as bad has come."""
         mine = (self.finding.id, _path(self.finding.hit))
-        # Of what comes, information and hints do no harm.
+        # Of what comes, information and hints do no harm, unless it is the same finding at another place.
         rank = min(SEVERITIES.index(self.finding.severity), SEVERITIES.index("warning"))
         came = [RULES[id] for id, _ in new - old]
-        bad = [rule for rule in came if SEVERITIES.index(rule.severity) <= rank]
+        bad = [rule for rule in came if rule.id == self.finding.id or SEVERITIES.index(rule.severity) <= rank]
         return new[mine] < old[mine] and all(reveals and rule.find is not None for rule in bad)
 
     def _titled(self, title: str, before: Forecast, after: Forecast) -> str | None:
