@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 from typing import TypeVar
 
 from bandwright.bandfile.values import Filter
-from bandwright.forecast import bands, gaps
+from bandwright.forecast import gaps
 from bandwright.forecast.bands import Band
 from bandwright.forecast.candidates import Candidate
 from bandwright.forecast.forecast import Forecast
@@ -50,12 +50,12 @@ class Case:
     @property
     def bands(self) -> tuple[Band, ...]:
         """Every band item whose kind can be told."""
-        return self.once("bands", lambda: bands.bands(self.filter))
+        return self.forecast.bands
 
     @property
     def gaps(self) -> tuple[Gap, ...]:
         """The transitions between pass and stop bands."""
-        return self.once("gaps", lambda: gaps.gaps(self.filter))
+        return self.once("gaps", lambda: gaps.gaps(self.filter, self.bands))
 
     def once(self, name: str, compute: Callable[[], T]) -> T:
         """What several findings ask for, computed for the first of them."""

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from bandwright.bandfile.values import Filter, Path, Place
-from bandwright.forecast import bands
+from bandwright.forecast.bands import Band
 from bandwright.forecast.types import Binding
 
 
@@ -42,10 +42,10 @@ class Gap:
         return ((Place(self.below), "the transition starts here"), (Place(self.above), "and ends here"))
 
 
-def gaps(filter: Filter) -> tuple[Gap, ...]:
-    """The transitions between neighbouring bands whose edges can be read."""
+def gaps(filter: Filter, bands: Sequence[Band]) -> tuple[Gap, ...]:
+    """The transitions between neighbouring bands of the filter whose edges can be read."""
     found = []
-    ordered = [band for band in bands.bands(filter) if band.kind != "bounds"]
+    ordered = [band for band in bands if band.kind != "bounds"]
     for before, after in itertools.pairwise(ordered):
         below, above = before.edge_path("high"), after.edge_path("low")
         low, high = filter.get(*below), filter.get(*above)

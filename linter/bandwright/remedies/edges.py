@@ -65,7 +65,7 @@ def in_other_convention(forecast: Forecast, place: Place) -> Iterator[Change]:
     if edge is None or other_convention(edge) is None:
         return
     texts = []
-    for band in bands.bands(filter):
+    for band in forecast.bands:
         for path in (band.edge_path("low"), band.edge_path("high")):
             other = filter.quantity(*path)
             if other is not None and other.unit == edge.unit:
@@ -92,7 +92,7 @@ def larger_rate(forecast: Forecast, place: Place) -> Iterator[Change]:
 def own_rate(forecast: Forecast, place: Place) -> Iterator[Change]:
     """Give the filter its own sample rate: the present one times a power of two that leaves edges room."""
     rate = forecast.filter.quantity("sample_rate")
-    edges = [w for band in bands.bands(forecast.filter) for w in (band.low, band.high) if w is not None]
+    edges = [w for band in forecast.bands for w in (band.low, band.high) if w is not None]
     times = 1
     while rate is not None and max(edges, default=0.0) > ROOM * math.pi * times:
         times *= 2

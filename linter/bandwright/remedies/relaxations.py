@@ -62,7 +62,7 @@ def _widened(forecast: Forecast, most: int) -> Iterator[Change]:
     chosen, filter = forecast.chosen, forecast.filter
     if chosen is None or chosen.taps is None or not most < chosen.taps.value < math.inf:
         return
-    found = gaps.gaps(filter)
+    found = gaps.gaps(filter, forecast.bands)
     width = WIDER * min((one.width for one in found), default=0.0) * chosen.taps.value / most
     moves = []
     for one in found:
@@ -134,7 +134,7 @@ def drop_order(forecast: Forecast, place: Place) -> Iterator[Change]:
 
 def even_transitions(forecast: Forecast, place: Place) -> Iterator[Change]:
     """Widen the transition whose stop edge stands at `place` to the width of the next narrowest."""
-    wider = evened(forecast.filter, gaps.gaps(forecast.filter))
+    wider = evened(forecast.filter, gaps.gaps(forecast.filter, forecast.bands))
     if wider is not None:
         before, after = forecast.filter.quantity(*place.path), wider[1]
         if before is not None:

@@ -86,7 +86,7 @@ def _hints(forecast: Forecast) -> Iterator[Hint]:
     filter = forecast.filter
     yield from _built_as(forecast)
     yield from _brought(filter)
-    for gap in gaps(filter):
+    for gap in gaps(filter, forecast.bands):
         if gap.width > 0.0:
             width = edge.width_in_words(forecast, Transition(gap.low, gap.high))
             yield Hint(gap.above, width, f"The transition from {gap.low_written} to {gap.high_written}.")

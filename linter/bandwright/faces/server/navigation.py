@@ -32,13 +32,10 @@ async def definition(
     session: Session, client: Client, params: types.DefinitionParams
 ) -> list[dict[str, Any]] | None:
     """Where the device or filter named at a place gets its name."""
-    file = session.files.get(params.text_document.uri)
-    if file is None:
+    found = found_at(session, params.text_document.uri, params.position)
+    if found is None:
         return None
-    document = session.read(file)
-    named = named_at(document, *session.lines(file).place(params.position))
-    if named is None:
-        return None
+    file, document, named = found
     return _locations(session, file, [span for _, span in declarations(document, named)])
 
 
@@ -46,17 +43,24 @@ async def references(
     session: Session, client: Client, params: types.ReferenceParams
 ) -> list[dict[str, Any]] | None:
     """Every place that names the device or filter at a place."""
-    file = session.files.get(params.text_document.uri)
-    if file is None:
+    found = found_at(session, params.text_document.uri, params.position)
+    if found is None:
         return None
-    document = session.read(file)
-    named = named_at(document, *session.lines(file).place(params.position))
-    if named is None:
-        return None
+    file, document, named = found
     spans = [span for _, span in uses(document, named)]
     if params.context.include_declaration:
         spans += [span for _, span in declarations(document, named)]
     return _locations(session, file, sorted(spans))
+
+
+def found_at(session: Session, uri: str, position: types.Position) -> tuple[OpenFile, Document, Named] | None:
+    """The device or filter whose name stands at the place that a request is about, with its open file."""
+    file = session.files.get(uri)
+    if file is None:
+        return None
+    document = session.read(file)
+    named = named_at(document, *session.lines(file).place(position))
+    return (file, document, named) if named is not None else None
 
 
 def _locations(session: Session, file: OpenFile, spans: list[Span]) -> list[dict[str, Any]]:

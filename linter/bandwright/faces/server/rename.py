@@ -11,9 +11,9 @@ from bandwright.bandfile import edits, grammar
 from bandwright.bandfile.values import Document, TextEdit
 from bandwright.faces.server.client import Client
 from bandwright.faces.server.code_actions import workspace_edit
-from bandwright.faces.server.navigation import DEVICE, Named, declarations, named_at, uses
+from bandwright.faces.server.navigation import DEVICE, Named, declarations, found_at, uses
 from bandwright.faces.server.refusal import Refusal
-from bandwright.faces.server.session import OpenFile, Session
+from bandwright.faces.server.session import Session
 
 _PLAIN = re.compile(r"[^\W_][\w.-]*")
 
@@ -22,10 +22,10 @@ async def prepare(
     session: Session, client: Client, params: types.PrepareRenameParams
 ) -> dict[str, Any] | None:
     """The name at a place that can be changed; None where there is none."""
-    file = session.files.get(params.text_document.uri)
-    named = _named(session, file, params.position) if file is not None else None
-    if file is None or named is None:
+    found = found_at(session, params.text_document.uri, params.position)
+    if found is None:
         return None
+    file, _, named = found
     return {"range": session.lines(file).plain_range(named.span), "placeholder": named.name}
 
 
@@ -35,20 +35,16 @@ async def rename(session: Session, client: Client, params: types.RenameParams) -
     Raises:
         Refusal: the new name is no plain one, or is taken; or the old one does not tell which is meant.
     """
-    file = session.files.get(params.text_document.uri)
-    named = _named(session, file, params.position) if file is not None else None
-    if file is None or named is None:
+    found = found_at(session, params.text_document.uri, params.position)
+    if found is None:
         return None
-    document, name = session.read(file), params.new_name.strip()
+    file, document, named = found
+    name = params.new_name.strip()
     if name == named.name:
         return None
     if reason := _why_not(document, named, name):
         raise Refusal(reason)
     return workspace_edit(session, client, file, renamed(document, named, name))
-
-
-def _named(session: Session, file: OpenFile, position: types.Position) -> Named | None:
-    return named_at(session.read(file), *session.lines(file).place(position))
 
 
 def _why_not(document: Document, named: Named, name: str) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Literal
 
@@ -175,14 +176,7 @@ def _band_pass(
     width = prewarped_difference(passing.low, passing.high)
     if not width > 0.0:
         return None
-
-    def stretch_below(w: float) -> float:
-        difference = prewarped_difference(w, passing.low)
-        return difference * (1.0 + p2 / prewarped(w)) / width if w > 0.0 else math.inf
-
-    def stretch_above(w: float) -> float:
-        return prewarped_difference(passing.high, w) * (1.0 + p1 / prewarped(w)) / width
-
+    stretch_below, stretch_above = _stretches(passing, width)
     low, high = _pass_edge(passing, "low", peak), _pass_edge(passing, "high", peak)
     transitions = [
         _transition(band, low, edge, stretch_below(edge.w), stretch_below(far), 0.0)
@@ -205,14 +199,7 @@ def _band_stop(below: MaskBand, stopping: MaskBand, above: MaskBand, peak: float
     width = prewarped_difference(stopping.low, stopping.high)
     if not width > 0.0:
         return None
-
-    def stretch_below(w: float) -> float:
-        difference = prewarped_difference(w, stopping.low)
-        return difference * (1.0 + s2 / prewarped(w)) / width if w > 0.0 else math.inf
-
-    def stretch_above(w: float) -> float:
-        return prewarped_difference(stopping.high, w) * (1.0 + s1 / prewarped(w)) / width
-
+    stretch_below, stretch_above = _stretches(stopping, width)
     inner = 1.0 / (1.0 + max(stretch_below(below.low), stretch_above(above.high)))
     transitions = [
         _transition(
@@ -233,6 +220,23 @@ def _band_stop(below: MaskBand, stopping: MaskBand, above: MaskBand, peak: float
         ),
     ]
     return _checked("band-stop", transitions, math.sqrt(s1 * s2), width, peak)
+
+
+def _stretches(inner: MaskBand, width: float) -> tuple[Callable[[float], float], Callable[[float], float]]:
+    """e of a frequency below, and of one above, the inner band of a band-pass or band-stop with edges at 1.
+
+    Below: (i1-x)(x+i2)/(x B); above: (x-i2)(x+i1)/(x B), all prewarped, B = i2 - i1.
+    """
+    low, high = prewarped(inner.low), prewarped(inner.high)
+
+    def below(w: float) -> float:
+        difference = prewarped_difference(w, inner.low)
+        return difference * (1.0 + high / prewarped(w)) / width if w > 0.0 else math.inf
+
+    def above(w: float) -> float:
+        return prewarped_difference(inner.high, w) * (1.0 + low / prewarped(w)) / width
+
+    return below, above
 
 
 def _above(stops: list[MaskBand], peak: float) -> list[tuple[MaskBand, Edge, float]]:
